@@ -1,0 +1,222 @@
+"""One-sigma error of a synthetic magnitude per band and temperature, measured on the mean dwarf sequence and the Sun.
+
+A magnitude's error is the root mean square difference between our tables and the mean dwarf sequence within a Gaussian
+window of temperature; a band the sequence does not have takes the difference from the CALSPEC spectra of solar-type
+stars; bands that neither covers take the range of errors found when the recipe was first tried.
+"""
+
+from __future__ import annotations
+
+import csv
+from collections.abc import Mapping, Sequence
+from typing import Any
+
+import numpy as np
+
+from .blue_correction import STARS, interpolate
+from .passbands import Curve, hat_weights
+from .sources import Sources, fits_columns
+from .spectra import Array
+from .write import rounded
+
+NODES_K = np.array(
+    [
+        2000,
+        2250,
+        2500,
+        2750,
+        3000,
+        3250,
+        3500,
+        3750,
+        4000,
+        4250,
+        4500,
+        4750,
+        5000,
+        5500,
+        6000,
+        6500,
+        7000,
+        7500,
+        8000,
+        9000,
+        10000,
+        12500,
+        15000,
+        20000,
+        30000,
+        50000.0,
+    ]
+)
+FLOOR_MAG = 0.01
+WINDOW_LN_TEFF = ((8000.0, 14000.0), (0.06, 0.20))  # the sequence has few rows among hot stars
+STANDARDS_FLOOR_MAG = 0.02  # the same three stars shaped the blue correction, so alone they flatter
+LOGG_GIANT_BELOW = 3.0
+COOL_GIANT_MAG = 0.15
+COOL_GIANT_BELOW_K = 4200.0
+GIANT_EXTRA_MAG = 0.03  # no measured correction reaches giants; blueward of 5000 A twice this
+MIN_STARS = 1.5  # effective number of sequence rows below which a band counts as not measured
+GRAVITY_SUN_CGS = 27423.2
+TEFF_SUN_K = 5772.0
+# One colour chain per band of the mean dwarf sequence, each from M_V. Gaia is DR2 there: offsets of 0.02 are its own.
+_CHAINS: Mapping[str, tuple[tuple[str, int], ...]] = {
+    "Generic/Johnson.U": (("B-V", 1), ("U-B", 1)),
+    "Generic/Johnson.B": (("B-V", 1),),
+    "Generic/Johnson.V": (),
+    "Generic/Cousins.R": (("V-R", -1),),
+    "Generic/Cousins.I": (("V-I", -1),),
+    "GAIA/GAIA3.G": (("G-V", 1),),
+    "GAIA/GAIA3.Grp": (("G-V", 1), ("G-RP", -1)),
+    "GAIA/GAIA3.Gbp": (("G-V", 1), ("G-RP", -1), ("BP-RP", 1)),
+    "2MASS/2MASS.Ks": (("V-Ks", -1),),
+    "2MASS/2MASS.H": (("V-Ks", -1), ("H-Ks", 1)),
+    "2MASS/2MASS.J": (("V-Ks", -1), ("H-Ks", 1), ("J-H", 1)),
+    "WISE/WISE.W1": (("V-Ks", -1), ("Ks-W1", -1)),
+    "WISE/WISE.W2": (("V-Ks", -1), ("Ks-W1", -1), ("W1-W2", -1)),
+    "WISE/WISE.W3": (("V-Ks", -1), ("Ks-W1", -1), ("W1-W3", -1)),
+    "WISE/WISE.W4": (("V-Ks", -1), ("Ks-W1", -1), ("W1-W4", -1)),
+}
+# Errors found when the recipe was first tried: upper temperature of the range, then U, optical, near and mid infrared.
+_FIRST_FOUND = (
+    (2700.0, 0.30, 0.27, 0.05, 0.05),
+    (3300.0, 0.05, 0.07, 0.03, 0.03),
+    (4500.0, 0.03, 0.05, 0.03, 0.05),
+    (7500.0, 0.09, 0.03, 0.03, 0.05),
+    (15000.0, 0.10, 0.05, 0.06, 0.07),
+    (np.inf, 0.12, 0.08, 0.14, 0.07),
+)
+_CLASS_ENDS_ANGSTROM = (4000.0, 10000.0, 28000.0, np.inf)
+_NUV = (3000.0, 0.2)
+_FUV = (1800.0, (5000.0, 6000.0, 7500.0), (2.0, 1.0, 0.3))  # below 7000 K it is the chromosphere
+
+
+def first_found_mag(pivot_angstrom: float, teff_k: float) -> float:
+    """Return the starting error of a band that nothing measures."""
+    if pivot_angstrom < _FUV[0]:
+        return float(np.interp(teff_k, _FUV[1], _FUV[2]))
+    if pivot_angstrom < _NUV[0]:
+        return _NUV[1]
+    row = next(row for row in _FIRST_FOUND if teff_k <= row[0])
+    column = next(i for i, end in enumerate(_CLASS_ENDS_ANGSTROM) if pivot_angstrom < end)
+    return row[1 + column]
+
+
+class Photometer:
+    """Synthetic absolute magnitudes of our own tables, straight from the arrays that are about to be written.
+
+    Parameters
+    ----------
+    nodes, teff_k, logg, ln_flux : the surface-flux table, as in Atmospheres
+    weights : (n_bands, nw) quadrature weights
+    entries : the entries of passbands.json, same order
+    """
+
+    def __init__(  # noqa: D107 - the class docstring lists the parameters
+        self,
+        nodes: Array,
+        teff_k: Array,
+        logg: Array,
+        ln_flux: Array,
+        weights: Array,
+        entries: Sequence[Mapping[str, Any]],
+    ) -> None:
+        self.nodes, self.teff_k, self.logg, self.ln_flux, self.weights = nodes, teff_k, logg, ln_flux, weights
+        self.ids = [entry["id"] for entry in entries]
+        self.zero = np.array([e["zero_flux_vega" if e["usual_system"] == "Vega" else "zero_flux_ab"] for e in entries])
+
+    def surface_flux(self, teff_k: float, logg: float) -> Array:
+        """Return the surface flux (nw,); the gravity is held to the table's range."""
+        inside = float(np.clip(logg, self.logg[0], self.logg[-1]))
+        return interpolate(self.teff_k, self.logg, self.ln_flux, teff_k, inside)
+
+    def absolute_mag(self, teff_k: float, logg: float, radius_rsun: float) -> Array:
+        """Return the magnitudes at 10 pc, (n_bands,), usual systems."""
+        dilution = (radius_rsun * 6.957e10 / 3.0856775814913673e19) ** 2
+        return np.asarray(-2.5 * np.log10(self.weights @ self.surface_flux(teff_k, logg) * dilution / self.zero))
+
+
+def sequence_stars(csv_text: str, coolest_k: float, hottest_k: float) -> list[dict[str, float]]:
+    """Return rows of the dwarf sequence with radius from log L (its R disagrees at B5-B8) and log g; NaN if missing."""
+    stars = []
+    for row in csv.DictReader(csv_text.splitlines()):
+        star = {key: float(value) if value else np.nan for key, value in row.items() if key != "spectral_type"}
+        if coolest_k <= star["teff_k"] <= hottest_k and np.isfinite(star["mass_msun"] + star["M_V"]):
+            radius = 10 ** (0.5 * star["log_luminosity_lsun"]) * (TEFF_SUN_K / star["teff_k"]) ** 2
+            stars.append(star | {"radius": radius, "logg": np.log10(GRAVITY_SUN_CGS * star["mass_msun"] / radius**2)})
+    return stars
+
+
+def sequence_residuals(photometer: Photometer, stars: Sequence[Mapping[str, float]]) -> Array:
+    """Return (n_stars, n_bands) synthetic minus published absolute magnitude, NaN where not published."""
+    out = np.full((len(stars), len(photometer.ids)), np.nan)
+    for i, star in enumerate(stars):
+        synthetic = photometer.absolute_mag(star["teff_k"], star["logg"], star["radius"])
+        for j, band in enumerate(photometer.ids):
+            if band in _CHAINS:
+                out[i, j] = synthetic[j] - star["M_V"] - sum(sign * star[colour] for colour, sign in _CHAINS[band])
+    return out
+
+
+def standard_residuals(sources: Sources, photometer: Photometer, curves: Sequence[Curve]) -> tuple[Array, Array]:
+    """Return temperatures (n,) and residuals (n, n_bands) of solar-type standards, scaled to zero mean at V and Ks."""
+    trial = np.arange(5600.0, 6400.1, 10.0)
+    anchors = [photometer.ids.index(name) for name in ("Generic/Johnson.V", "GAIA/GAIA3.Grp", "2MASS/2MASS.Ks")]
+    temperatures, rows = [], []
+    for name, gravity in STARS.items():
+        wavelength, flux = fits_columns(sources.standards()[f"calspec/{name}.fits"], "WAVELENGTH", "FLUX")
+        inside = np.array([c.wavelength[0] >= wavelength[0] and c.wavelength[-1] <= wavelength[-1] for c in curves])
+        observed = np.array(
+            [
+                -2.5 * np.log10(hat_weights(c, wavelength) @ flux) if ok else np.nan
+                for c, ok in zip(curves, inside, strict=True)
+            ]
+        )
+        models = np.array([-2.5 * np.log10(photometer.weights @ photometer.surface_flux(t, gravity)) for t in trial])
+        difference = models - observed
+        best = int(np.argmin(difference[:, anchors].var(axis=1)))
+        temperatures.append(trial[best])
+        rows.append(difference[best] - difference[best, anchors].mean())
+    return np.array(temperatures), np.array(rows)
+
+
+def windowed_rms(teff_k: Array, residuals: Array, node_k: float) -> Array:
+    """Return (n_bands,) weighted rms of the residuals around one temperature, NaN where too few."""
+    width = np.interp(node_k, *WINDOW_LN_TEFF)
+    weight = np.exp(-0.5 * (np.log(teff_k / node_k) / width) ** 2)
+    known = np.isfinite(residuals)
+    total = (weight[:, None] * known).sum(axis=0)
+    square = (weight[:, None] * np.where(known, residuals, 0.0) ** 2).sum(axis=0)
+    return np.where(total >= MIN_STARS, np.sqrt(square / np.maximum(total, 1e-9)), np.nan)
+
+
+def build_model_error(
+    sources: Sources,
+    photometer: Photometer,
+    curves: Sequence[Curve],
+    sequence_csv: str,
+    pivots_angstrom: Sequence[float],
+) -> dict[str, Any]:
+    """Return the content of model_error.json."""
+    stars = sequence_stars(sequence_csv, float(photometer.teff_k[0]), float(photometer.teff_k[-1]))
+    star_teff = np.array([star["teff_k"] for star in stars])
+    residuals = sequence_residuals(photometer, stars)
+    standard_teff, standard = standard_residuals(sources, photometer, curves)
+    dwarf = np.empty((NODES_K.size, len(pivots_angstrom)))
+    for i, node in enumerate(NODES_K):
+        by_standards = np.maximum(windowed_rms(standard_teff, standard, node), STANDARDS_FLOOR_MAG)
+        by_sequence = windowed_rms(star_teff, residuals, node)
+        both = np.where(np.isfinite(by_sequence), by_sequence, by_standards)
+        start = np.array([first_found_mag(pivot, node) for pivot in pivots_angstrom])
+        ultraviolet = np.array(pivots_angstrom) < _NUV[0]
+        dwarf[i] = np.maximum(np.where(np.isfinite(both) & ~ultraviolet, both, start), FLOOR_MAG)
+    extra = GIANT_EXTRA_MAG * np.where(np.array(pivots_angstrom) < 5000.0, 2.0, 1.0)
+    giant = np.hypot(dwarf, extra)
+    giant = np.where((NODES_K < COOL_GIANT_BELOW_K)[:, None], np.maximum(giant, COOL_GIANT_MAG), giant)
+    return {
+        "bands": photometer.ids,
+        "teff_k": NODES_K.tolist(),
+        "logg_giant_below": LOGG_GIANT_BELOW,
+        "dwarf_mag": [[rounded(value, 3) for value in row] for row in dwarf],
+        "giant_mag": [[rounded(value, 3) for value in row] for row in giant],
+    }

@@ -1,0 +1,52 @@
+"""The t mixture against scipy's multivariate t, and its fit against known components."""
+
+from __future__ import annotations
+
+import numpy as np
+import pytest
+from scipy.stats import multivariate_t
+
+from vetter.inference import student
+
+
+def _mixture() -> student.StudentMixture:
+    covariance = np.array([[[1.0, 0.3], [0.3, 0.5]], [[0.2, 0.0], [0.0, 2.0]]])
+    return student.from_moments(np.array([0.7, 0.3]), np.array([[0.0, 0.0], [5.0, -3.0]]), covariance)
+
+
+def test_density_equals_scipy():
+    mixture = _mixture()
+    x = np.random.default_rng(0).normal(size=(50, 2)) * 3.0
+    parts = [
+        share * multivariate_t(mean, factor @ factor.T, df=5).pdf(x)
+        for share, mean, factor in zip(mixture.share, mixture.mean, mixture.factor, strict=True)
+    ]
+    np.testing.assert_allclose(mixture.ln_density(x), np.log(np.sum(parts, axis=0)), rtol=1e-10)
+
+
+def test_draws_follow_the_density():
+    """The mean of (another density / density) over draws is one: the t with wider scale as that other density."""
+    mixture = _mixture()
+    x = mixture.draw(200000, np.random.default_rng(1))
+    other = multivariate_t([1.0, -1.0], [[4.0, 0.0], [0.0, 4.0]], df=8)
+    ratio = np.exp(other.logpdf(x) - mixture.ln_density(x))
+    assert ratio.mean() == pytest.approx(1.0, abs=4.0 * ratio.std() / np.sqrt(ratio.size))
+
+
+def test_fit_recovers_components():
+    rng = np.random.default_rng(2)
+    x = _mixture().draw(20000, rng)
+    fitted = student.fit(x, np.full(len(x), 1.0 / len(x)), 2, rng)
+    order = np.argsort(-fitted.share)
+    np.testing.assert_allclose(fitted.share[order], [0.7, 0.3], atol=0.03)
+    np.testing.assert_allclose(fitted.mean[order], [[0.0, 0.0], [5.0, -3.0]], atol=0.1)
+    np.testing.assert_allclose(fitted.factor[order][0] @ fitted.factor[order][0].T, [[1.0, 0.3], [0.3, 0.5]], atol=0.1)
+
+
+def test_wide_component_is_twice_as_wide():
+    rng = np.random.default_rng(3)
+    x = rng.normal(size=(5000, 3))
+    weights = np.full(5000, 1.0 / 5000)
+    wide = student.with_wide_component(student.fit(x, weights, 1, rng), x, weights)
+    assert wide.share[-1] == pytest.approx(student.WIDE_SHARE)
+    np.testing.assert_allclose(np.diagonal(wide.factor[-1]), 2.0, rtol=0.05)

@@ -1,0 +1,101 @@
+"""The dictionaries behind ``vetter light`` and ``vetter bands``."""
+
+from __future__ import annotations
+
+import json
+
+import numpy as np
+import pytest
+
+from vetter.errors import InputError
+from vetter.light.report import DEFAULT_BANDS, bands_report, light_report
+from vetter.light.tables import LightTables, load_tables
+
+SUN = (5777.0, 4.44, 1.0, 0.0)
+
+
+def test_form(world: LightTables) -> None:
+    bands = ["Generic/Johnson.V", "GALEX/GALEX.NUV"]
+    report = light_report([SUN, (4000.0, 4.6, 0.6, 0.0)], 50.0, 0.1, 3.1, bands, [(540.0, 560.0)], tables=world)
+    assert json.loads(json.dumps(report)) == report
+    assert list(report) == ["bands", "windows"]
+    assert list(report["bands"]) == bands
+    visual = report["bands"]["Generic/Johnson.V"]
+    assert visual["system"] == "Vega"
+    assert report["bands"]["GALEX/GALEX.NUV"]["system"] == "AB"
+    assert visual["total_mag"] == pytest.approx(-2.5 * np.log10(sum(10 ** (-0.4 * m) for m in visual["star_mag"])))
+    [window] = report["windows"]
+    assert window["wavelength_nm"] == [540.0, 560.0]
+    assert window["ratio_to_first"][0] == 1.0
+    assert 0.0 < window["ratio_to_first"][1] < 0.36
+
+
+def test_one_star_is_its_own_total(world: LightTables) -> None:
+    report = light_report([SUN], 10.0, bands=["V-like"], tables=world)
+    assert report["bands"]["Generic/Johnson.V"]["star_mag"] == [report["bands"]["Generic/Johnson.V"]["total_mag"]]
+    assert report["windows"] == []
+
+
+def test_reddening_is_r_v_times_excess(world: LightTables) -> None:
+    one, other = (
+        light_report([SUN], 10.0, ebv, 3.1, ["Generic/Johnson.V"], tables=world)["bands"]["Generic/Johnson.V"]
+        for ebv in (0.0, 1.0)
+    )
+    # In the small world A(5500 A) = A(V); the passband's mean lies within 2 % of that.
+    assert other["total_mag"] - one["total_mag"] == pytest.approx(3.1, rel=0.02)
+
+
+def test_default_bands_are_all_built_in() -> None:
+    assert set(DEFAULT_BANDS) <= set(load_tables().passbands)
+    assert list(light_report([SUN], 10.0)["bands"]) == list(DEFAULT_BANDS)
+
+
+def test_short_names_are_understood() -> None:
+    assert list(light_report([SUN], 10.0, bands=["V", "Ks", "gaia/gaia3.g"])["bands"]) == [
+        "Generic/Johnson.V",
+        "2MASS/2MASS.Ks",
+        "GAIA/GAIA3.G",
+    ]
+
+
+def test_cautions(world: LightTables) -> None:
+    report = light_report([SUN, (1500.0, 5.0, 0.1, -0.5)], 10.0, bands=["V-like"], tables=world)
+    assert len(report["cautions"]) == 2
+    assert report["cautions"][0].startswith("star 2 lies outside")
+    assert "[Fe/H]" in report["cautions"][1]
+
+
+def test_every_fault_at_once() -> None:
+    with pytest.raises(InputError) as caught:
+        light_report([SUN, (-5.0, 4.0, 0.0, 0.0)], -1.0, float("nan"))
+    assert [fault.key for fault in caught.value.faults] == [
+        "star 2 teff_k",
+        "star 2 radius_rsun",
+        "distance_pc",
+        "ebv_mag",
+    ]
+
+
+@pytest.mark.parametrize("distance_pc", [0.0, float("inf"), float("nan")])
+def test_bad_distances(distance_pc: float) -> None:
+    with pytest.raises(InputError, match="positive number of parsecs"):
+        light_report([SUN], distance_pc)
+
+
+def test_no_star() -> None:
+    with pytest.raises(InputError, match="at least one star"):
+        light_report([], 10.0)
+
+
+def test_bands_report_lists_every_band_once() -> None:
+    records = bands_report()
+    assert {record["id"] for record in records} == set(load_tables().passbands)
+    assert len(records) == len(load_tables().passbands)
+    pivots = [record["pivot_nm"] for record in records]
+    assert pivots == sorted(pivots)
+    assert json.loads(json.dumps(records)) == records
+    visual = next(record for record in records if record["id"] == "Generic/Johnson.V")
+    # Bessell & Murphy 2012 (PASP 124, 140): pivot of V 547.9 nm (from memory); f(V = 0) is 3.6e-9 to 1 %.
+    assert visual["pivot_nm"] == pytest.approx(548.0, abs=2.0)
+    assert visual["zero_flux_vega"] == pytest.approx(3.63e-9, rel=0.04)
+    assert all(isinstance(record["source"], str) and record["reference"] for record in records)

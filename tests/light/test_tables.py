@@ -1,0 +1,243 @@
+"""The shipped tables: checksums, shapes, physical sense, and a rebuild from the archives where they are at hand."""
+
+from __future__ import annotations
+
+import csv
+import hashlib
+import json
+import os
+import re
+from importlib.resources import files
+from pathlib import Path
+from typing import Any
+
+import numpy as np
+import pytest
+
+GRIDS = Path(str(files("vetter.grids")))
+STEFAN_BOLTZMANN = 5.670374419e-5  # CODATA 2018, erg s-1 cm-2 K-4
+SMALL_TABLES = ("passbands.npz", "passbands.json", "white_dwarfs.npz", "dwarf_sequence.csv", "model_error.json")
+TABLES = ("atmospheres.npz", "extinction.npz", "hpt_coefficients.json", *SMALL_TABLES)
+SOURCES = os.environ.get("VETTER_SOURCES", "")
+# The identifiers that a system file may use.
+IDS = {
+    *(f"Generic/Johnson.{b}" for b in "UBV"),
+    *(f"Generic/Cousins.{b}" for b in "RI"),
+    *(f"TYCHO/TYCHO.{b}" for b in "BV"),
+    "Hipparcos/Hipparcos.Hp",
+    *(f"SLOAN/SDSS.{b}" for b in "ugriz"),
+    *(f"PAN-STARRS/PS1.{b}" for b in "grizy"),
+    *(f"SkyMapper/SkyMapper.{b}" for b in "uvgriz"),
+    *(f"GAIA/GAIA3.{b}" for b in ("G", "Gbp", "Grp")),
+    *(f"2MASS/2MASS.{b}" for b in ("J", "H", "Ks")),
+    *(f"WISE/WISE.W{i}" for i in range(1, 5)),
+    *(f"Spitzer/IRAC.I{i}" for i in (1, 2)),
+    *(f"GALEX/GALEX.{b}" for b in ("FUV", "NUV")),
+    *(f"Swift/UVOT.{b}" for b in ("UVW2", "UVM2", "UVW1", "U", "B", "V")),
+    "TESS/TESS.Red",
+}
+
+
+def load(name: str) -> dict[str, np.ndarray]:
+    with np.load(GRIDS / name, allow_pickle=False) as archive:
+        return {key: archive[key] for key in archive.files}
+
+
+@pytest.fixture(scope="module")
+def atmospheres() -> dict[str, np.ndarray]:
+    return load("atmospheres.npz")
+
+
+@pytest.fixture(scope="module")
+def passbands() -> dict[str, np.ndarray]:
+    return load("passbands.npz")
+
+
+@pytest.fixture(scope="module")
+def entries() -> list[dict[str, Any]]:
+    return json.loads((GRIDS / "passbands.json").read_text(encoding="utf-8"))
+
+
+def sha256(path: Path) -> str:
+    return hashlib.sha256(path.read_bytes()).hexdigest()
+
+
+def test_checksums_in_the_readme_are_those_of_the_files() -> None:
+    text = (GRIDS / "README.md").read_text(encoding="utf-8")
+    stated = dict(re.findall(r"^\| (\S+\.(?:npz|json|csv)) \| ([0-9a-f]{64}) \|$", text, re.MULTILINE))
+    assert stated == {name: sha256(GRIDS / name) for name in TABLES}
+
+
+def test_tables_are_small_enough_to_ship() -> None:
+    assert sum((GRIDS / name).stat().st_size for name in TABLES) < 12e6
+
+
+def test_atmospheres_have_the_shape_of_their_axes(atmospheres: dict[str, np.ndarray]) -> None:
+    wavelength, teff, logg = (atmospheres[key] for key in ("wavelength_angstrom", "teff_k", "logg"))
+    assert atmospheres["ln_flux"].shape == (teff.size, logg.size, wavelength.size)
+    assert atmospheres["ln_flux"].dtype == np.float32
+    assert atmospheres["filled"].shape == (teff.size, logg.size)
+    assert np.isfinite(atmospheres["ln_flux"]).all()
+    for axis in (wavelength, teff, logg):
+        assert (np.diff(axis) > 0).all()
+    assert logg.tolist() == [0.5 * i for i in range(11)]
+    assert teff[0] == 2000
+    assert wavelength[-1] == pytest.approx(320000)
+
+
+def test_total_flux_is_sigma_t4(atmospheres: dict[str, np.ndarray]) -> None:
+    flux = np.exp(atmospheres["ln_flux"].astype(np.float64))
+    total = np.trapezoid(flux, atmospheres["wavelength_angstrom"], axis=-1)
+    ratio = total / (STEFAN_BOLTZMANN * atmospheres["teff_k"][:, None] ** 4)
+    # 1 %: the published models themselves are within 0.3 % above 4000 K.
+    assert np.abs(ratio[~atmospheres["filled"]] - 1).max() < 0.01
+
+
+def test_published_models_are_where_kurucz_1993_has_them(atmospheres: dict[str, np.ndarray]) -> None:
+    """Lowest gravity per temperature from the atlas's own list (Kurucz 1993, CD-ROM 13)."""
+    lowest = {5000: 0.0, 6250: 0.5, 8000: 1.0, 9000: 1.5, 10000: 2.0, 12000: 2.5, 20000: 3.0, 30000: 3.5, 35000: 4.0,
+              40000: 4.5, 50000: 5.0}  # fmt: skip
+    for teff, logg in lowest.items():
+        row = int(np.flatnonzero(atmospheres["teff_k"] == teff)[0])
+        assert atmospheres["logg"][~atmospheres["filled"][row]].min() == logg
+
+
+def test_brightness_rises_with_temperature_everywhere_beyond_the_balmer_jump(
+    atmospheres: dict[str, np.ndarray],
+) -> None:
+    """At fixed gravity a hotter surface is brighter at every wavelength; bins that hold strong lines are averaged."""
+    wavelength = atmospheres["wavelength_angstrom"]
+    for lo, hi in ((4000, 5000), (5500, 6500), (7000, 9000), (11000, 13500), (15000, 18000), (20000, 24000)):
+        inside = (wavelength >= lo) & (wavelength < hi)
+        mean = np.exp(atmospheres["ln_flux"][:, 8:, inside].astype(np.float64)).mean(axis=-1)
+        assert (np.diff(mean, axis=0) > 0).all(), (lo, hi)
+
+
+def test_far_infrared_follows_rayleigh_jeans(atmospheres: dict[str, np.ndarray]) -> None:
+    """F lambda^4 is nearly flat beyond 10 micron; a wrong interpolation of the sparse nodes bends it by 0.3 mag."""
+    wavelength = atmospheres["wavelength_angstrom"]
+    inside = wavelength > 1.2e5
+    smooth = atmospheres["ln_flux"][..., inside] + 4 * np.log(wavelength[inside])
+    hot = atmospheres["teff_k"] >= 4500
+    slope = np.diff(smooth[hot][:, 8:], axis=-1) / np.diff(np.log(wavelength[inside]))
+    # h c / (lambda k T) = 0.27 at 12 micron and 4500 K gives a slope of 0.13; opacity takes the rest.
+    assert np.abs(slope).max() < 0.35
+
+
+def test_every_band_of_the_system_file_is_there_once(entries: list[dict[str, Any]]) -> None:
+    names = [entry["id"] for entry in entries]
+    assert sorted(names) == sorted(IDS)
+    synonyms = [synonym for entry in entries for synonym in entry["synonyms"]]
+    assert set(synonyms) == {f"Generic/Bessell.{b}" for b in "UBVRI"}
+    assert len(set(names + synonyms)) == len(names + synonyms)
+
+
+def test_passband_weights_are_means(
+    passbands: dict[str, np.ndarray], entries: list[dict[str, Any]], atmospheres: dict[str, np.ndarray]
+) -> None:
+    weights = passbands["weights"]
+    assert weights.shape == (len(entries), atmospheres["wavelength_angstrom"].size)
+    assert (weights >= 0).all()
+    assert weights.sum(axis=1) == pytest.approx(1, abs=1e-12)
+
+
+def test_weights_equal_direct_integrals(
+    passbands: dict[str, np.ndarray], entries: list[dict[str, Any]], atmospheres: dict[str, np.ndarray]
+) -> None:
+    """The slow twin: interpolate the spectrum linearly on the union of wavelengths and integrate."""
+    nodes = atmospheres["wavelength_angstrom"]
+    row = int(np.flatnonzero(atmospheres["teff_k"] == 5750)[0])
+    flux = np.exp(atmospheres["ln_flux"][row, 9].astype(np.float64))
+    for index in range(len(entries)):
+        wavelength, throughput = passbands[f"wavelength_{index}"], passbands[f"throughput_{index}"]
+        inside = nodes[(nodes > wavelength[0]) & (nodes < wavelength[-1])]
+        union = np.union1d(wavelength, inside)
+        kernel = np.interp(union, wavelength, throughput) * union
+        direct = np.trapezoid(kernel * np.interp(union, nodes, flux), union) / np.trapezoid(kernel, union)
+        assert passbands["weights"][index] @ flux == pytest.approx(direct, rel=1e-10)
+
+
+def test_pivot_wavelengths_are_the_published_ones(entries: list[dict[str, Any]]) -> None:
+    """Pivot wavelengths in angstrom, from memory, of the IVOA filter service unless named; 0.5 % covers the digits."""
+    published = {
+        "GAIA/GAIA3.G": 6218, "GAIA/GAIA3.Gbp": 5110, "GAIA/GAIA3.Grp": 7769, "2MASS/2MASS.J": 12358,
+        "2MASS/2MASS.H": 16458, "2MASS/2MASS.Ks": 21603, "WISE/WISE.W1": 33526, "WISE/WISE.W2": 46028,
+        "WISE/WISE.W3": 115608, "WISE/WISE.W4": 220883, "PAN-STARRS/PS1.g": 4810, "PAN-STARRS/PS1.y": 9614,
+        "SLOAN/SDSS.g": 4702, "SLOAN/SDSS.r": 6176, "GALEX/GALEX.NUV": 2305, "TESS/TESS.Red": 7453,
+        "Swift/UVOT.UVM2": 2246, "Swift/UVOT.V": 5424, "Spitzer/IRAC.I1": 35508, "Spitzer/IRAC.I2": 44960,
+    }  # fmt: skip
+    pivots = {entry["id"]: entry["pivot_angstrom"] for entry in entries}
+    for band, pivot in published.items():
+        assert pivots[band] == pytest.approx(pivot, rel=0.005), band
+
+
+def test_entries_say_where_they_come_from(entries: list[dict[str, Any]]) -> None:
+    for entry in entries:
+        assert set(entry["source"]) == {"package", "version", "path"}
+        assert re.search(r"(19|20)\d\d", entry["reference"])
+        assert entry["usual_system"] in {"Vega", "AB"}
+        assert 1e-14 < entry["zero_flux_vega"] < 1e-7
+        assert 1e-14 < entry["zero_flux_ab"] < 1e-7
+
+
+@pytest.mark.parametrize("kind", ["da", "db"])
+def test_white_dwarf_table(kind: str, entries: list[dict[str, Any]]) -> None:
+    table = load("white_dwarfs.npz")
+    teff, logg, bands, mag = (table[f"{kind}_{key}"] for key in ("teff_k", "logg", "bands", "surface_mag"))
+    assert mag.shape == (teff.size, logg.size, bands.size)
+    assert logg.tolist() == [7.0, 7.5, 8.0, 8.5, 9.0]
+    assert teff[-1] == 150000
+    assert set(bands.tolist()) <= {entry["id"] for entry in entries}
+    hot = teff >= 5500
+    assert np.isfinite(mag[hot]).all()
+    assert (np.diff(mag[hot], axis=0) < 0).all()  # brighter when hotter, per unit surface
+
+
+def test_white_dwarf_absolute_magnitude() -> None:
+    """The table's first published model at 10000 K, log g 8: 0.614 Msun, M_V 12.15 (Bergeron's tables, from memory)."""
+    table = load("white_dwarfs.npz")
+    row = int(np.flatnonzero(table["da_teff_k"] == 10000)[0])
+    column = table["da_bands"].tolist().index("Generic/Johnson.V")
+    radius_rsun = np.sqrt(27423.2 * 0.614 / 1e8)
+    assert table["da_surface_mag"][row, 2, column] - 5 * np.log10(radius_rsun) == pytest.approx(12.15, abs=0.05)
+
+
+def test_dwarf_sequence_has_the_published_rows() -> None:
+    rows = {row["spectral_type"]: row for row in csv.DictReader((GRIDS / "dwarf_sequence.csv").open(encoding="utf-8"))}
+    sun, vega = rows["G2V"], rows["A0V"]  # Pecaut & Mamajek 2013, version 2022.04.16
+    assert (float(sun["teff_k"]), float(sun["M_V"]), float(sun["B-V"])) == (5770, 4.80, 0.650)
+    assert (float(vega["teff_k"]), float(vega["M_V"]), float(vega["V-Ks"])) == (9700, 0.99, 0.041)
+    assert list(rows)[0] == "O3V"
+    assert list(rows)[-1] == "Y2V"
+    assert rows["M5V"]["W1-W3"] == ""
+
+
+def test_model_error_covers_every_band(entries: list[dict[str, Any]]) -> None:
+    table = json.loads((GRIDS / "model_error.json").read_text(encoding="utf-8"))
+    assert table["bands"] == [entry["id"] for entry in entries]
+    teff = np.array(table["teff_k"])
+    dwarf, giant = np.array(table["dwarf_mag"]), np.array(table["giant_mag"])
+    assert dwarf.shape == giant.shape == (teff.size, len(entries))
+    assert (np.diff(teff) > 0).all()
+    assert dwarf.min() >= 0.01
+    assert (giant >= dwarf).all()
+    assert dwarf[:, table["bands"].index("GALEX/GALEX.NUV")].min() >= 0.2
+    assert dwarf[teff < 7000, table["bands"].index("GALEX/GALEX.FUV")].min() >= 0.3
+
+
+def test_model_error_is_small_where_models_are_good() -> None:
+    """G dwarfs: within the 0.03 mag found in the optical and near infrared when the recipe was first tried."""
+    table = json.loads((GRIDS / "model_error.json").read_text(encoding="utf-8"))
+    row = table["dwarf_mag"][table["teff_k"].index(5500)]
+    for band in ("Generic/Johnson.B", "Generic/Johnson.V", "GAIA/GAIA3.G", "2MASS/2MASS.J", "2MASS/2MASS.Ks"):
+        assert row[table["bands"].index(band)] <= 0.03
+
+
+@pytest.mark.slow
+@pytest.mark.skipif(not SOURCES, reason="VETTER_SOURCES does not name a folder with the package archives")
+def test_rebuild_gives_the_same_bytes(tmp_path: Path) -> None:
+    from vetter.grids.build import build
+
+    build(Path(SOURCES), tmp_path)
+    for name in (*SMALL_TABLES, "atmospheres.npz"):
+        assert sha256(tmp_path / name) == sha256(GRIDS / name), name

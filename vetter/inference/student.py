@@ -1,0 +1,160 @@
+"""Mixtures of multivariate Student t densities: draw, evaluate, refit to weighted points."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from math import lgamma
+
+import numpy as np
+from numpy.typing import NDArray
+
+FloatArray = NDArray[np.float64]
+
+DEGREES_OF_FREEDOM = 5.0
+WIDE_SHARE = 0.15
+"""Share of draws from one component twice as wide as everything found so far: insurance against a missed tail."""
+
+
+NEGLIGIBLE_WEIGHT = 1e-4
+"""Points lighter than this fraction of the heaviest do not shape the mixture; leaving them out is twice as fast."""
+
+EM_STEPS = 8
+"""Enough for a proposal; the next rung refits anyway."""
+
+
+@dataclass(frozen=True)
+class StudentMixture:
+    """A mixture of t densities with five degrees of freedom.
+
+    Attributes
+    ----------
+    share : (k,) positive, sum 1
+    mean : (k, d)
+    factor : (k, d, d) lower Cholesky factors of the scale matrices
+    """
+
+    share: FloatArray
+    mean: FloatArray
+    factor: FloatArray
+
+    @property
+    def dimension(self) -> int:
+        """Number of coordinates."""
+        return int(self.mean.shape[1])
+
+    def draw(self, count: int, rng: np.random.Generator) -> FloatArray:
+        """Return ``count`` independent points (count, d).
+
+        Components are drawn at random, not in exact shares: the error of a mean is then the plain standard error.
+        """
+        edges = np.searchsorted(np.cumsum(self.share), rng.random(count))
+        component = np.minimum(edges, self.share.size - 1)
+        normal = rng.standard_normal((count, self.dimension))
+        stretch = np.sqrt(DEGREES_OF_FREEDOM / rng.chisquare(DEGREES_OF_FREEDOM, count))
+        points = np.empty_like(normal)
+        for k in range(self.share.size):
+            rows = component == k
+            points[rows] = self.mean[k] + stretch[rows, None] * (normal[rows] @ self.factor[k].T)
+        return points
+
+    def ln_components(self, distance2: FloatArray) -> FloatArray:
+        """Return ln(share_k * density_k) (n, k) at points of these squared distances (n, k) from each component."""
+        d, nu = self.dimension, DEGREES_OF_FREEDOM
+        constant = lgamma((nu + d) / 2) - lgamma(nu / 2) - 0.5 * d * np.log(nu * np.pi)
+        ln_scale = np.log(np.einsum("kdd->kd", self.factor)).sum(axis=1)
+        return np.asarray(np.log(self.share) + constant - ln_scale - 0.5 * (nu + d) * np.log1p(distance2 / nu))
+
+    def distance2(self, x: FloatArray) -> FloatArray:
+        """Return squared Mahalanobis distances (n, k) of points ``x`` (n, d) from each component."""
+        unfactor = np.linalg.inv(self.factor)
+        columns = [((x - mean) @ matrix.T) for mean, matrix in zip(self.mean, unfactor, strict=True)]
+        return np.stack([np.einsum("ij,ij->i", white, white) for white in columns], axis=1)
+
+    def ln_density(self, x: FloatArray) -> FloatArray:
+        """Return ln density (n,) at points ``x`` (n, d)."""
+        parts = self.ln_components(self.distance2(x))
+        top = parts.max(axis=1)
+        return np.asarray(top + np.log(np.exp(parts - top[:, None]).sum(axis=1)))
+
+
+def from_moments(share: FloatArray, mean: FloatArray, covariance: FloatArray) -> StudentMixture:
+    """Return a mixture from shares (k,), means (k, d) and positive-definite scale matrices (k, d, d)."""
+    return StudentMixture(share / share.sum(), mean, np.linalg.cholesky(covariance))
+
+
+def with_wide_component(mixture: StudentMixture, x: FloatArray, weights: FloatArray) -> StudentMixture:
+    """Return the mixture with one component added that covers all weighted points twice as wide."""
+    mean, covariance = _weighted_moments(x, weights)
+    wide = np.linalg.cholesky(4.0 * covariance)
+    return StudentMixture(
+        np.append(mixture.share * (1.0 - WIDE_SHARE), WIDE_SHARE),
+        np.vstack([mixture.mean, mean]),
+        np.concatenate([mixture.factor, wide[None]]),
+    )
+
+
+def fit(x: FloatArray, weights: FloatArray, components: int, rng: np.random.Generator) -> StudentMixture:
+    """Fit a mixture to points ``x`` (n, d) with weights (n,) that sum to one.
+
+    Starts from the points that are farthest apart among the weighty ones and runs expectation-maximisation for
+    the t mixture with fixed degrees of freedom (Peel & McLachlan 2000, Statistics and Computing 10, 339, eqs. 16-20).
+    """
+    keep = weights > NEGLIGIBLE_WEIGHT * weights.max()
+    x, weights = x[keep], weights[keep] / weights[keep].sum()
+    _, covariance = _weighted_moments(x, weights)
+    effective = 1.0 / np.sum(weights**2)
+    components = max(1, min(components, int(effective / (3 * x.shape[1]))))
+    centres = _spread_out_points(x, weights, covariance, components, rng)
+    mixture = from_moments(np.full(components, 1.0 / components), centres, np.stack([0.3 * covariance] * components))
+    for _ in range(EM_STEPS if components > 1 else 2):
+        mixture = _em_step(mixture, x, weights, covariance)
+    return mixture
+
+
+def _em_step(mixture: StudentMixture, x: FloatArray, weights: FloatArray, overall: FloatArray) -> StudentMixture:
+    """One expectation-maximisation step; a component that starves is dropped."""
+    distance2 = mixture.distance2(x)
+    parts = mixture.ln_components(distance2)
+    responsibility = np.exp(parts - parts.max(axis=1, keepdims=True))
+    responsibility *= (weights / responsibility.sum(axis=1))[:, None]
+    closeness = (DEGREES_OF_FREEDOM + x.shape[1]) / (DEGREES_OF_FREEDOM + distance2)
+    effective = responsibility.sum(axis=0) ** 2 / np.maximum((responsibility**2).sum(axis=0), 1e-300)
+    alive = (responsibility.sum(axis=0) > 1e-3) & (effective > 1.5 * x.shape[1])
+    if not alive.any():
+        return from_moments(np.ones(1), (weights @ x)[None], overall[None])
+    share, means, covariances = [], [], []
+    for k in np.flatnonzero(alive):
+        pull = responsibility[:, k] * closeness[:, k]
+        centre = pull @ x / pull.sum()
+        offset = x - centre
+        scatter = (offset * pull[:, None]).T @ offset / responsibility[:, k].sum()
+        share.append(responsibility[:, k].sum())
+        means.append(centre)
+        covariances.append(scatter + 1e-3 * np.diag(np.diagonal(scatter)) + 1e-8 * overall + 1e-14 * np.eye(x.shape[1]))
+    return from_moments(np.array(share), np.array(means), np.array(covariances))
+
+
+def _weighted_moments(x: FloatArray, weights: FloatArray) -> tuple[FloatArray, FloatArray]:
+    """Mean (d,) and covariance (d, d) of weighted points, the latter made safely positive definite."""
+    mean = weights @ x
+    offset = x - mean
+    covariance = (offset * weights[:, None]).T @ offset
+    return mean, covariance + 1e-3 * np.diag(np.diagonal(covariance)) + 1e-12 * np.eye(x.shape[1])
+
+
+def _spread_out_points(
+    x: FloatArray, weights: FloatArray, covariance: FloatArray, count: int, rng: np.random.Generator
+) -> FloatArray:
+    """Choose starting centres by weight times squared distance to the nearest one (Arthur & Vassilvitskii 2007)."""
+    white = np.linalg.solve(np.linalg.cholesky(covariance), x.T).T
+    chosen = [int(np.argmax(weights))]
+    nearest2 = np.full(x.shape[0], np.inf)
+    while len(chosen) < count:
+        nearest2 = np.minimum(nearest2, np.sum((white - white[chosen[-1]]) ** 2, axis=1))
+        probability = weights * np.minimum(nearest2, 50.0)
+        if probability.sum() <= 0.0:
+            break
+        chosen.append(int(rng.choice(x.shape[0], p=probability / probability.sum())))
+    centres = x[chosen]
+    missing = count - len(chosen)
+    return np.vstack([centres, np.repeat(centres[:1], missing, axis=0)])

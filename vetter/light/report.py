@@ -1,0 +1,124 @@
+"""What the commands ``vetter light`` and ``vetter bands`` print, as plain dictionaries."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from typing import Any
+
+import numpy as np
+
+from vetter.errors import Fault, InputError
+from vetter.light.engine import Component, LightEngine, Window, total_magnitudes
+from vetter.light.tables import LightTables, load_tables
+from vetter.system.bands import canonical_band
+
+Star = tuple[float, float, float, float]
+"""Teff (K), log g (log10 cm/s2), radius (solar), [Fe/H] (dex)."""
+
+DEFAULT_BANDS = (
+    "Generic/Johnson.B",
+    "Generic/Johnson.V",
+    "GAIA/GAIA3.G",
+    "GAIA/GAIA3.Gbp",
+    "GAIA/GAIA3.Grp",
+    "SLOAN/SDSS.g",
+    "SLOAN/SDSS.r",
+    "2MASS/2MASS.J",
+    "2MASS/2MASS.H",
+    "2MASS/2MASS.Ks",
+    "WISE/WISE.W1",
+)
+"""Bands reported when none is named."""
+
+STAR_LIMITS = (("teff_k", 500.0, 500000.0), ("logg", -2.0, 10.0), ("radius_rsun", 1e-6, 1e5), ("feh", -6.0, 1.5))
+
+
+def _check(stars: Sequence[Star], distance_pc: float, ebv_mag: float) -> None:
+    """Raise one InputError with every fault in the numbers."""
+    faults = [
+        Fault(f"star {i + 1} {name}", repr(value), f"a number from {low:g} to {high:g}", "")
+        for i, star in enumerate(stars)
+        for value, (name, low, high) in zip(star, STAR_LIMITS, strict=True)
+        if not low <= value <= high
+    ]
+    if not stars:
+        faults.append(Fault("star", "", "at least one star", "Give --star TEFF,LOGG,RADIUS[,FEH]."))
+    if not 0.0 < distance_pc < np.inf:
+        faults.append(Fault("distance_pc", repr(distance_pc), "a positive number of parsecs", ""))
+    if not 0.0 <= ebv_mag <= 10.0:
+        faults.append(Fault("ebv_mag", repr(ebv_mag), "a number from 0 to 10", ""))
+    if faults:
+        raise InputError("light", faults)
+
+
+def _cautions(engine: LightEngine, component: Component) -> list[str]:
+    """Return a sentence for every star whose light is not what the tables were made for."""
+    cautions = [
+        f"star {i + 1} lies outside the atmosphere tables: the nearest surface stands in"
+        for i in np.flatnonzero(~engine.inside(component))
+    ]
+    if component.feh.any():
+        cautions.append("the tables are solar: [Fe/H] does not change these magnitudes, only their error")
+    return cautions
+
+
+def light_report(
+    stars: Sequence[Star],
+    distance_pc: float,
+    ebv_mag: float = 0.0,
+    r_v: float = 3.1,
+    bands: Sequence[str] = (),
+    windows_nm: Sequence[Window] = (),
+    tables: LightTables | None = None,
+) -> dict[str, Any]:
+    """Return magnitudes of each star and of their sum, and light ratios to the first star in windows.
+
+    The form is ``{"bands": {id: {"system", "total_mag", "star_mag": [...]}}, "windows": [{"wavelength_nm",
+    "ratio_to_first": [...]}]}``; a list ``cautions`` is added when there is something to say. Without ``bands`` a
+    usual set is reported. A_V = R_V E(B-V). Raises InputError naming everything that is out of range.
+    """
+    _check(stars, distance_pc, ebv_mag)
+    names = [canonical_band(name) or name for name in bands or DEFAULT_BANDS]
+    a_v_mag = r_v * ebv_mag
+    engine = LightEngine.build(names, windows_nm, r_v=r_v, a_v_max_mag=a_v_mag, tables=tables)
+    teff_k, logg, radius_rsun, feh = np.array(stars, dtype=float).T
+    component = Component("star", teff_k, logg, feh, radius_rsun)
+    magnitudes = engine.magnitudes(component, distance_pc, a_v_mag)
+    total = total_magnitudes([row[None] for row in magnitudes])[0]
+    ratios = 10.0 ** (-0.4 * (magnitudes - magnitudes[0]))
+    report: dict[str, Any] = {
+        "bands": {
+            band: {"system": system, "total_mag": float(total[j]), "star_mag": magnitudes[:, j].tolist()}
+            for j, (band, system) in enumerate(zip(engine.bands, engine.systems, strict=True))
+        },
+        "windows": [
+            {"wavelength_nm": list(window), "ratio_to_first": ratios[:, len(engine.bands) + j].tolist()}
+            for j, window in enumerate(engine.windows_nm)
+        ],
+    }
+    if cautions := _cautions(engine, component):
+        report["cautions"] = cautions
+    return report
+
+
+def bands_report(tables: LightTables | None = None) -> list[dict[str, Any]]:
+    """Return one record per built-in band, in order of pivot wavelength.
+
+    Keys: id, synonyms, system (the usual one), pivot_nm, width_nm, zero_flux_vega and zero_flux_ab (flux of magnitude
+    zero, erg s-1 cm-2 A-1), source (where the curve was taken from) and reference (who measured it).
+    """
+    passbands = (tables or load_tables()).passbands.values()
+    return [
+        {
+            "id": band.id,
+            "synonyms": list(band.synonyms),
+            "system": band.usual_system,
+            "pivot_nm": band.pivot_angstrom / 10.0,
+            "width_nm": band.width_angstrom / 10.0,
+            "zero_flux_vega": band.zero_flux["Vega"],
+            "zero_flux_ab": band.zero_flux["AB"],
+            "source": band.source,
+            "reference": band.reference,
+        }
+        for band in sorted(passbands, key=lambda band: band.pivot_angstrom)
+    ]

@@ -1,0 +1,45 @@
+"""What a scenario predicts for n samples: the only thing an observation ever sees of it."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+FloatArray = NDArray[np.float64]
+
+
+@dataclass(frozen=True)
+class Prediction:
+    """Predicted quantities, one row per sample; bands and windows in the order of the light engine.
+
+    Attributes
+    ----------
+    magnitudes : (n, bands) of everything together, in each band's photometric system
+    window_ratio : (n, windows) companion's flux / seen star's flux
+    optical_ratio : (n,) the same between 500 and 600 nm
+    distance_pc, ebv_mag : (n,)
+    teff_k, logg, feh : (n,) of the seen star
+    companion_teff_k, companion_logg : (n,) of the companion's brightest star; not-a-number where it is dark
+    mass_msun, companion_mass_msun : (n,)
+    k1_km_s, inclination_deg, photocentre_mas : (n,) of the orbit; inclination folded into 0-90 degrees
+    ordinary_seen_star : whether the seen star is what it looks like, so that an outside mass estimate applies
+    """
+
+    magnitudes: FloatArray
+    window_ratio: FloatArray
+    optical_ratio: FloatArray
+    distance_pc: FloatArray
+    ebv_mag: FloatArray
+    teff_k: FloatArray
+    logg: FloatArray
+    feh: FloatArray
+    companion_teff_k: FloatArray
+    companion_logg: FloatArray
+    mass_msun: FloatArray
+    companion_mass_msun: FloatArray
+    k1_km_s: FloatArray
+    inclination_deg: FloatArray
+    photocentre_mas: FloatArray
+    ordinary_seen_star: bool

@@ -1,0 +1,1 @@
+"""What an evaluation found, and the ways to say it: table, machine-readable files, figures."""

@@ -1,0 +1,100 @@
+"""What a reader must know before quoting a table: computed from this result, not canned."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from typing import TYPE_CHECKING
+
+from vetter.observations.base import Observation
+from vetter.observations.spectroscopy import DILUTION_FROM
+from vetter.results.verdicts import ScenarioVerdict
+from vetter.scenarios.context import ASTROMETRY_BAND, Context, ebv_max_mag
+from vetter.system.keys import SCENARIO_NAMES
+
+if TYPE_CHECKING:
+    from vetter.evaluation import ScenarioRun
+
+SOLAR_TABLE_FEH = 0.3
+"""Beyond this |[Fe/H]| the colours of a solar table are no longer good to its quoted error."""
+
+
+def cautions(
+    context: Context, observations: Sequence[Observation], runs: Sequence[ScenarioRun], rows: Sequence[ScenarioVerdict]
+) -> list[str]:
+    """Return the cautions in the order of their weight."""
+    said = [
+        "A table of likelihoods is not a discovery: the verdicts hold only for the explanations, priors and data "
+        "given here. Excluded means 5 sigma or more, disfavoured 3 to 5.",
+    ]
+    said += _not_tried(runs)
+    said += _about_input(context)
+    for observation in observations:
+        said += observation.cautions(context.system)
+    said += _about_fits(rows)
+    said += _about_sampling(rows)
+    return said
+
+
+def _not_tried(runs: Sequence[ScenarioRun]) -> list[str]:
+    """Explanations that exist but were not run."""
+    tried = {run.scenario.name for run in runs}
+    missing = [name.replace("_", " ") for name in SCENARIO_NAMES if name not in tried]
+    if not missing:
+        return []
+    return [f"Not tried, and so not excluded: {', '.join(missing)}."]
+
+
+def _about_input(context: Context) -> list[str]:
+    """Things the input left open, or outside the range of the tables."""
+    system = context.system
+    said = []
+    if not system.orbit.eccentricity_given:
+        said.append("No eccentricity was given: the orbit was taken as circular.")
+    if system.orbit.thiele_innes is not None and system.orbit.photocentre_band is None:
+        said.append(f"No band was given for the Thiele-Innes elements: {ASTROMETRY_BAND} was taken.")
+    if system.extinction is None:
+        said.append(f"Nothing was given on dust: E(B-V) was free between 0 and {ebv_max_mag(system):g} mag.")
+    feh = system.primary.feh
+    if feh is not None and abs(feh.value) > SOLAR_TABLE_FEH:
+        said.append(
+            f"The light tables are of solar composition; at [Fe/H] {feh.value:+.2f} the model error was enlarged, "
+            "most of all in the ultraviolet and blue."
+        )
+    if system.primary.teff_k is None:
+        said.append("No Teff was given: the seen star's kind was left to the magnitudes.")
+    return said
+
+
+def _about_fits(rows: Sequence[ScenarioVerdict]) -> list[str]:
+    """Best fits on the edge of a prior, and spectra that a second star would have blended."""
+    said = []
+    for row in rows:
+        if row.best_fit is None or row.verdict == "excluded":
+            continue
+        if row.best_fit.at_edge:
+            names = ", ".join(row.best_fit.at_edge)
+            said.append(f"{row.title}: the best fit sits on the edge of the prior of {names}.")
+        ratio = row.best_fit.values["optical_light_ratio"]
+        if ratio > DILUTION_FROM:
+            said.append(
+                f"{row.title}: the companion would give {100 * ratio:.0f} % as much optical light as the seen star, so "
+                "a spectrum analysed as one star may be off; its errors were enlarged for this case."
+            )
+    giants = [row for row in rows if row.best_fit is not None and row.seen_star.startswith("a giant")]
+    if giants:
+        masses = ", ".join(f"{r.best_fit.values['m1_msun']:.2g} ({r.title.lower()})" for r in giants if r.best_fit)
+        said.append(
+            f"The seen star was taken as {giants[0].seen_star}: its mass decides which masses are closed. "
+            f"Mass at the best fits, in Msun: {masses}."
+        )
+    return said
+
+
+def _about_sampling(rows: Sequence[ScenarioVerdict]) -> list[str]:
+    """Evidences that did not reach the wanted precision."""
+    return [
+        f"{row.title}: the evidence is poorly sampled (effective sample {row.diagnostics.effective_sample_size:.0f}, "
+        f"Pareto k {row.diagnostics.pareto_k:.2f}); do not quote it."
+        for row in rows
+        if row.diagnostics is not None and not row.diagnostics.converged
+    ]

@@ -1,0 +1,123 @@
+"""The table on the terminal: plain words, readable by someone who has never seen the program."""
+
+from __future__ import annotations
+
+import textwrap
+
+from vetter.results.verdicts import Driver, ScenarioVerdict, Verdicts, headline
+
+WIDE = 120
+NARROW = 80
+DRIVERS_SHOWN = 2
+
+
+def render(verdicts: Verdicts, width: int = WIDE) -> str:
+    """Return the whole report for a terminal of ``width`` columns (the wide layout needs 100, else the narrow one)."""
+    width = max(60, min(width, WIDE))
+    lines = [*_header(verdicts, width), ""]
+    if verdicts.nothing_fits:
+        lines += [*_wrapped(headline(verdicts), width), ""]
+    lines += _wide_rows(verdicts, width) if width >= 100 else _narrow_rows(verdicts, width)
+    if not verdicts.nothing_fits:
+        lines += ["", *_wrapped(headline(verdicts), width)]
+    lines += ["", "Cautions"]
+    for caution in verdicts.cautions:
+        lines += _wrapped(caution, width, "- ")
+    return "\n".join(lines) + "\n"
+
+
+def _header(verdicts: Verdicts, width: int) -> list[str]:
+    """Name, orbit, what the orbit needs, what was used and what was not given."""
+    orbit = verdicts.orbit
+    parts = [verdicts.system, f"P {orbit.period_d:g} d", f"e {orbit.eccentricity:g}"]
+    if orbit.k1_km_s is not None:
+        parts += [f"K1 {orbit.k1_km_s:g} km/s", f"mass function {orbit.mass_function_msun:.3g} Msun"]
+    if orbit.companion_min_msun is not None:
+        parts.append(f"companion > {orbit.companion_min_msun:.2g} Msun for a seen star of {orbit.seen_star_msun:.3g}")
+    lines = _wrapped("    ".join(parts), width, keep_spaces=True)
+    lines += _wrapped("used: " + ", ".join(verdicts.observations_used_words), width)
+    if verdicts.observations_absent:
+        absent = ", ".join(name.replace("_", " ") for name in verdicts.observations_absent)
+        lines += _wrapped("not given: " + absent, width)
+    return lines
+
+
+def _wide_rows(verdicts: Verdicts, width: int) -> list[str]:
+    """One row per scenario; long reasons are continued under their own column."""
+    heads = ("explanation", "verdict", "sigma", "companion (Msun)", "ln Z", "what carries it (sigma without it)")
+    widths = (35, 11, 6, 16, 16)
+    last = width - sum(widths) - 2 * len(widths)
+    lines = [_row(heads, widths), "-" * width]
+    for scenario in verdicts.scenarios:
+        reason = textwrap.wrap(_reason(scenario), last) or [""]
+        cells = (scenario.title, scenario.verdict, _sigma(scenario), _mass(scenario), _evidence(scenario), reason[0])
+        lines.append(_row(cells, widths))
+        lines += [" " * (sum(widths) + 2 * len(widths)) + rest for rest in reason[1:]]
+    return lines
+
+
+def _row(cells: tuple[str, ...], widths: tuple[int, ...]) -> str:
+    """First two columns to the left, numbers to the right, the reason to the left."""
+    padded = [
+        cell.ljust(size) if place < 2 else cell.rjust(size)
+        for place, (cell, size) in enumerate(zip(cells[:-1], widths, strict=True))
+    ]
+    return "  ".join([*padded, cells[-1]]).rstrip()
+
+
+def _narrow_rows(verdicts: Verdicts, width: int) -> list[str]:
+    """Two or three lines per scenario for terminals of 80 columns."""
+    lines: list[str] = []
+    for scenario in verdicts.scenarios:
+        sigma = _sigma(scenario)
+        verdict = scenario.verdict if sigma == "-" else f"{scenario.verdict}, {sigma} sigma"
+        lines.append(f"{scenario.title:<36}{verdict}")
+        if scenario.ln_evidence is not None:
+            lines.append(f"    companion {_mass(scenario)} Msun    ln Z {_evidence(scenario)}")
+        if _reason(scenario):
+            lines += _wrapped(_reason(scenario), width, "    ")
+    return lines
+
+
+def _sigma(scenario: ScenarioVerdict) -> str:
+    return "-" if scenario.sigma is None else f"{scenario.sigma:.1f}"
+
+
+def _mass(scenario: ScenarioVerdict) -> str:
+    if scenario.companion_mass_msun is None:
+        return "-"
+    low, _, high = scenario.companion_mass_msun
+    # Enough digits that the two ends differ.
+    digits = 1 if high - low > 0.2 else 2 if high - low > 0.02 else 3
+    return f"{low:.{digits}f} - {high:.{digits}f}"
+
+
+def _evidence(scenario: ScenarioVerdict) -> str:
+    if scenario.ln_evidence is None or scenario.ln_evidence_error is None:
+        return "-"
+    return f"{scenario.ln_evidence:.1f} +- {max(scenario.ln_evidence_error, 0.01):.2f}"
+
+
+def _reason(scenario: ScenarioVerdict) -> str:
+    """The wall that closes a scenario, or the observations that carry an exclusion, weightiest first."""
+    if scenario.closed_because is not None:
+        return scenario.closed_because
+    if scenario.verdict == "allowed" or not scenario.driven_by:
+        return ""
+    return ", ".join(f"{driver.label} ({driver.sigma_without:.1f})" for driver in strongest(scenario))
+
+
+def strongest(scenario: ScenarioVerdict) -> list[Driver]:
+    """Return the observations without which the exclusion weakens most: at least one, at most two."""
+    ordered = sorted(scenario.driven_by, key=lambda driver: driver.sigma_without)
+    sigma = scenario.sigma or 0.0
+    telling = [driver for driver in ordered if driver.sigma_without < 0.9 * sigma]
+    return (telling or ordered[:1])[:DRIVERS_SHOWN]
+
+
+def _wrapped(text: str, width: int, indent: str = "", keep_spaces: bool = False) -> list[str]:
+    """Wrap a paragraph; continuation lines line up under the text after the indent."""
+    if keep_spaces and len(text) <= width:
+        return [text]
+    text = " ".join(text.split()) if not keep_spaces else text.replace("    ", "  ")
+    return textwrap.wrap(text, width, initial_indent=indent, subsequent_indent=" " * len(indent))

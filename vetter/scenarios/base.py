@@ -1,0 +1,266 @@
+"""What a scenario is, the machinery all scenarios share, and the registry that finds them.
+
+A new explanation is one new class in this package under ``@register``: its titles, the range and prior of the
+companion's mass, its own parameters, and one method that says what light the companion sheds. Distance, dust, the
+seen star, the orbit and the walls that hold for any pair of stars are handled here.
+"""
+
+from __future__ import annotations
+
+import importlib
+import pkgutil
+from abc import ABC, abstractmethod
+from collections.abc import Mapping
+from dataclasses import dataclass
+from typing import ClassVar, NamedTuple
+
+import numpy as np
+from numpy.typing import NDArray
+
+from vetter.light.engine import Component
+from vetter.observations.astrometry import measured_inclination
+from vetter.observations.orbit import k1_error_km_s
+from vetter.observations.prediction import Prediction
+from vetter.physics import kepler, roche
+from vetter.scenarios.context import Context
+from vetter.scenarios.orbit import CompanionDraw, OrbitDraws
+from vetter.scenarios.priors import LogUniform, Parameter, Uniform
+from vetter.scenarios.seen_star import SeenStar, SeenStarState, ordinary_seen_stars
+from vetter.system.model import Assumptions
+
+FloatArray = NDArray[np.float64]
+BoolArray = NDArray[np.bool_]
+
+_REGISTRY: dict[str, type[Scenario]] = {}
+
+
+class Wall(NamedTuple):
+    """A region of parameter space that is closed, and why, in words that can be printed."""
+
+    closed: BoolArray
+    words: str
+
+
+@dataclass(frozen=True)
+class Companion:
+    """The companion of each sample.
+
+    Attributes
+    ----------
+    components : the stars that shine, none for a dark companion
+    radius_rsun : (n,) size for the Roche wall, None where the companion is a point
+    walls : regions closed by the companion's own physics
+    """
+
+    components: tuple[Component, ...] = ()
+    radius_rsun: FloatArray | None = None
+    walls: tuple[Wall, ...] = ()
+
+
+class Scenario(ABC):
+    """One explanation of the unseen mass.
+
+    Class attributes
+    ----------------
+    name : identifier, as on the command line and in verdicts.json
+    title : as printed
+    rank : place in the table, ordinary explanations first
+    ordinary : True when no compact remnant beyond the white dwarf is involved
+    """
+
+    name: ClassVar[str]
+    title: ClassVar[str]
+    rank: ClassVar[int]
+    ordinary: ClassVar[bool]
+
+    @abstractmethod
+    def mass_prior(self, assumptions: Assumptions) -> LogUniform | Uniform:
+        """Return the prior of the companion's mass (solar)."""
+
+    def companion_parameters(self) -> list[Parameter]:
+        """Return the companion's own parameters beside its mass; none by default."""
+        return []
+
+    @abstractmethod
+    def companion(self, mass_msun: FloatArray, feh: FloatArray, draws: Mapping[str, FloatArray]) -> Companion:
+        """Return the companions of given mass (n,) and [Fe/H] (n,) with the drawn parameters."""
+
+    def branches(self, context: Context) -> list[Branch]:
+        """Return the discrete variants that are run separately; their evidences are averaged."""
+        return [Branch(self, seen, context) for seen in ordinary_seen_stars(context.system)]
+
+
+@dataclass(frozen=True)
+class Sampled:
+    """One evaluation of a branch: predictions, prior weight, the walls met, and everything worth reporting."""
+
+    prediction: Prediction
+    ln_ratio: FloatArray
+    walls: tuple[Wall, ...]
+    values: Mapping[str, FloatArray]
+
+
+@dataclass(frozen=True)
+class Branch:
+    """A scenario with one kind of seen star: maps unit-cube points to predicted quantities."""
+
+    scenario: Scenario
+    seen: SeenStar
+    context: Context
+
+    @property
+    def plain_parameters(self) -> list[Parameter]:
+        """Parameters that are drawn independently, in the order of the first coordinates."""
+        seen = self.seen.parameters(self.context.system.primary)
+        return [*self.context.shared_parameters(), *seen, *self.scenario.companion_parameters()]
+
+    @property
+    def parameters(self) -> list[Parameter]:
+        """All parameters: the plain ones, then mass and inclination of the orbit, which are drawn together."""
+        return [*self.plain_parameters, *self.orbit_draws.parameters(self.mass_prior)]
+
+    @property
+    def mass_prior(self) -> LogUniform | Uniform:
+        """Prior of the companion's mass."""
+        return self.scenario.mass_prior(self.context.system.assumptions)
+
+    @property
+    def orbit_draws(self) -> OrbitDraws:
+        """The orbit's part of the map."""
+        orbit = self.context.system.orbit
+        error = 0.0 if orbit.k1_km_s is None else k1_error_km_s(orbit)
+        return OrbitDraws(orbit, error, measured_inclination(orbit))
+
+    def sample(self, unit: FloatArray) -> Sampled:
+        """Return predictions for unit-cube points ``unit`` (n, number of parameters)."""
+        draws: dict[str, FloatArray] = {}
+        ln_ratio = np.zeros(unit.shape[0])
+        for column, parameter in enumerate(self.plain_parameters):
+            draws[parameter.name], ratio = parameter.draw(unit[:, column])
+            ln_ratio = ln_ratio + ratio
+        star = self.seen.star(draws)
+        orbit = self.orbit_draws.draw(unit[:, -2], unit[:, -1], star.mass_msun, self.mass_prior)
+        companion = self.scenario.companion(orbit.mass_msun, star.feh, draws)
+        prediction = self._predict(draws, star, orbit, companion)
+        walls = (*self._walls(star, orbit, companion, prediction), *companion.walls)
+        for wall in walls:
+            ln_ratio = np.where(wall.closed, -np.inf, ln_ratio)
+        return Sampled(prediction, ln_ratio + orbit.ln_ratio, walls, draws | _derived(star, orbit, companion))
+
+    def _predict(
+        self, draws: Mapping[str, FloatArray], star: SeenStarState, orbit: CompanionDraw, companion: Companion
+    ) -> Prediction:
+        """Light and orbit of every sample."""
+        engine, system = self.context.engine, self.context.system
+        distance_pc, ebv_mag = draws["distance_pc"], draws["ebv_mag"]
+        r_v = 3.1 if system.extinction is None else system.extinction.r_v
+        seen = engine.magnitudes(
+            Component("star", star.teff_k, star.logg, star.feh, star.radius_rsun), distance_pc, r_v * ebv_mag
+        )
+        others = [engine.magnitudes(component, distance_pc, r_v * ebv_mag) for component in companion.components]
+        ratio = sum((10.0 ** (0.4 * (seen - other)) for other in others), start=np.zeros(seen.shape))
+        bands = len(engine.bands)
+        column = self.context.photocentre_column
+        photocentre_ratio = np.zeros(len(distance_pc)) if column is None else ratio[:, column]
+        brightest = _brightest(companion, others, self.context.optical_column)
+        dark = np.full(len(distance_pc), np.nan)
+        sin_i = np.sqrt(1.0 - orbit.cos_inclination**2)
+        period_d, e = system.orbit.period_d.value, system.orbit.eccentricity.value
+        return Prediction(
+            magnitudes=seen[:, :bands] - 2.5 * np.log10(1.0 + ratio[:, :bands]),
+            window_ratio=ratio[:, bands:],
+            optical_ratio=ratio[:, self.context.optical_column],
+            distance_pc=distance_pc, ebv_mag=ebv_mag,
+            teff_k=star.teff_k, logg=star.logg, feh=star.feh,
+            companion_teff_k=dark if brightest is None else brightest.teff_k,
+            companion_logg=dark if brightest is None else brightest.logg,
+            mass_msun=star.mass_msun, companion_mass_msun=orbit.mass_msun,
+            k1_km_s=kepler.semi_amplitude_km_s(star.mass_msun, orbit.mass_msun, period_d, sin_i, e),
+            inclination_deg=np.degrees(np.arccos(orbit.cos_inclination)),
+            photocentre_mas=kepler.photocentre_mas(
+                1000.0 / distance_pc, kepler.separation_au(star.mass_msun + orbit.mass_msun, period_d),
+                star.mass_msun, orbit.mass_msun, photocentre_ratio,
+            ),
+            ordinary_seen_star=self.seen.ordinary,
+        )
+
+    def _walls(
+        self, star: SeenStarState, orbit: CompanionDraw, companion: Companion, prediction: Prediction
+    ) -> list[Wall]:
+        """Walls that hold for every scenario."""
+        system = self.context.system
+        largest = system.assumptions.companion_to_seen_light_max
+        period_d, e = system.orbit.period_d.value, system.orbit.eccentricity.value
+        separation_rsun = kepler.separation_rsun(star.mass_msun + orbit.mass_msun, period_d)
+        lobe = roche.roche_lobe_rsun(star.mass_msun, orbit.mass_msun, separation_rsun, e)
+        walls = [
+            Wall(orbit.closed, self._mass_words()),
+            Wall(~star.valid, "no ordinary star has the seen star's spectrum"),
+            Wall(star.radius_rsun > lobe, "the seen star would overflow its Roche lobe"),
+            Wall(
+                prediction.optical_ratio > largest,
+                f"the companion would outshine the seen star more than {largest:g} times in the optical",
+            ),
+        ]
+        if companion.radius_rsun is not None:
+            lobe = roche.roche_lobe_rsun(orbit.mass_msun, star.mass_msun, separation_rsun, e)
+            walls.append(Wall(companion.radius_rsun > lobe, "the companion would overflow its Roche lobe"))
+        return walls
+
+    def _mass_words(self) -> str:
+        """Why the mass range is closed."""
+        heaviest = self.mass_prior.high
+        orbit = self.context.system.orbit
+        k1 = orbit.k1_km_s
+        if k1 is None:
+            return "no mass in the range fits the orbit"
+        f_msun = float(kepler.mass_function_msun(orbit.period_d.value, k1.value, orbit.eccentricity.value))
+        reach = "at any inclination"
+        if f_msun >= heaviest:
+            return f"the orbit needs more than {heaviest:g} Msun {reach}, whatever the mass of the seen star"
+        return f"the orbit needs more than {heaviest:g} Msun {reach}"
+
+
+def _brightest(companion: Companion, magnitudes: list[FloatArray], column: int) -> Component | None:
+    """The component that shines most in the optical, sample by sample; None for a dark companion."""
+    if not companion.components:
+        return None
+    if len(companion.components) == 1:
+        return companion.components[0]
+    which = np.argmin(np.stack([m[:, column] for m in magnitudes]), axis=0)
+
+    def pick(name: str) -> FloatArray:
+        return np.asarray(np.choose(which, [getattr(component, name) for component in companion.components]))
+
+    return Component("star", pick("teff_k"), pick("logg"), pick("feh"), pick("radius_rsun"))
+
+
+def _derived(star: SeenStarState, orbit: CompanionDraw, companion: Companion) -> dict[str, FloatArray]:
+    """Quantities worth reporting that are not parameters."""
+    values = {
+        "m1_msun": star.mass_msun, "r1_rsun": star.radius_rsun, "teff1_k": star.teff_k, "logg1": star.logg,
+        "m2_msun": orbit.mass_msun, "inclination_deg": np.degrees(np.arccos(orbit.cos_inclination)),
+        "k1_km_s": orbit.k1_km_s,
+    }
+    for place, component in enumerate(companion.components):
+        suffix = "2" if len(companion.components) == 1 else f"2{'ab'[place]}"
+        values |= {f"teff{suffix}_k": component.teff_k, f"r{suffix}_rsun": component.radius_rsun}
+    return values
+
+
+def register(cls: type[Scenario]) -> type[Scenario]:
+    """Class decorator: make a scenario known. Raises ValueError when the name is taken by another class."""
+    known = _REGISTRY.get(cls.name)
+    if known is not None and known.__qualname__ != cls.__qualname__:
+        raise ValueError(f"a scenario named {cls.name!r} is already registered by {known.__module__}")
+    _REGISTRY[cls.name] = cls
+    return cls
+
+
+def registered() -> dict[str, Scenario]:
+    """Return every registered scenario by name in order of rank, importing the modules of this package first."""
+    package = importlib.import_module("vetter.scenarios")
+    for module in pkgutil.iter_modules(package.__path__):
+        importlib.import_module(f"vetter.scenarios.{module.name}")
+    ordered = sorted(_REGISTRY.values(), key=lambda cls: (cls.rank, cls.name))
+    return {cls.name: cls() for cls in ordered}

@@ -1,0 +1,48 @@
+"""One ordinary star on the main sequence, lost in the glare of the seen star."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from typing import ClassVar
+
+import numpy as np
+from numpy.typing import NDArray
+
+from vetter.light.engine import Component
+from vetter.scenarios.base import Companion, Scenario, Wall, register
+from vetter.scenarios.priors import LogUniform, Parameter, Uniform, score
+from vetter.stars.main_sequence import main_sequence
+from vetter.system.model import Assumptions
+
+FloatArray = NDArray[np.float64]
+
+
+@register
+class MainSequenceCompanion(Scenario):
+    """A single main-sequence star of any age, with the scatter of the mass-luminosity-radius relation."""
+
+    name: ClassVar[str] = "main_sequence"
+    title: ClassVar[str] = "Luminous main-sequence companion"
+    rank: ClassVar[int] = 10
+    ordinary: ClassVar[bool] = True
+
+    def mass_prior(self, assumptions: Assumptions) -> LogUniform:
+        """Return the prior of the companion's mass (solar)."""
+        return LogUniform(0.08, 60.0)
+
+    def companion_parameters(self) -> list[Parameter]:
+        """Return the age as a fraction of the main-sequence life, and the scores of the relation's scatter."""
+        return [
+            Parameter("life_fraction2", "", Uniform(0.0, 1.0)),
+            score("luminosity_score2"),
+            score("radius_score2"),
+        ]
+
+    def companion(self, mass_msun: FloatArray, feh: FloatArray, draws: Mapping[str, FloatArray]) -> Companion:
+        """Return the star of each sample; it shares the seen star's [Fe/H]."""
+        star = main_sequence(
+            mass_msun, draws["life_fraction2"], feh, draws["luminosity_score2"], draws["radius_score2"]
+        )
+        light = Component("star", star.teff_k, star.logg, feh, star.radius_rsun)
+        walls = (Wall(~star.valid, "no main-sequence star has that mass"),)
+        return Companion((light,), star.radius_rsun, walls)
