@@ -7,7 +7,8 @@ import sys
 from pathlib import Path
 
 from .recipes import extinction
-from .recipes.atmospheres import as_arrays, corrected_atmospheres
+from .recipes.atmospheres import as_arrays, blue_corrected, build_atmospheres, extended
+from .recipes.cool_correction import cool_corrected
 from .recipes.dwarf_sequence import build_dwarf_sequence
 from .recipes.model_error import Photometer, build_model_error
 from .recipes.passbands import build_passbands, read_curves
@@ -26,16 +27,22 @@ def build(archives: Path, out: Path) -> None:
     Raises FileNotFoundError or ValueError when an archive is absent or is not the one the tables were made from.
     """
     sources = Sources(archives)
-    table = corrected_atmospheres(sources)
-    write_npz(out / "atmospheres.npz", as_arrays(table))
+    plain = blue_corrected(sources, build_atmospheres(sources))
     curves = read_curves(sources)
-    arrays, entries = build_passbands(sources, curves, table.wavelength_angstrom)
+    arrays, entries = build_passbands(sources, curves, plain.wavelength_angstrom)
     write_npz(out / "passbands.npz", arrays)
     write_json(out / "passbands.json", entries)
-    write_npz(out / "white_dwarfs.npz", build_white_dwarfs(sources))
-    extinction.main(out)
+    white_dwarfs = build_white_dwarfs(sources)
+    write_npz(out / "white_dwarfs.npz", white_dwarfs)
     sequence = build_dwarf_sequence(sources)
     (out / "dwarf_sequence.csv").write_text(sequence, encoding="utf-8")
+    extinction.main(out)
+    table = extended(
+        cool_corrected(plain, arrays["weights"], entries, sequence),
+        white_dwarfs,
+        {entry["id"]: entry["pivot_angstrom"] for entry in entries},
+    )
+    write_npz(out / "atmospheres.npz", as_arrays(table))
     photometer = Photometer(
         table.wavelength_angstrom, table.teff_k, table.logg, table.ln_flux, arrays["weights"], entries
     )

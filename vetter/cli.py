@@ -51,7 +51,7 @@ def json_option(command: F) -> F:
 
 def emit(result: Any, text: str, as_json: bool) -> None:
     """Print a result on stdout, as JSON or as text."""
-    click.echo(json.dumps(result, indent=1, allow_nan=False) if as_json else text, nl=as_json)
+    click.echo(json.dumps(result, indent=1, allow_nan=False) if as_json else text.rstrip("\n"))
 
 
 @main.command()

@@ -165,9 +165,7 @@ def _run_branch(fit: Fit, seed: int, settings: Settings) -> BranchRun:
     for row, name in enumerate(droppable, start=1):
         use[row, slices[name]] = 0.0
     count = len(starts)
-    found = optimise.minimise(
-        fit, np.tile(starts, (len(use), 1)), np.repeat(use, count, axis=0), fit.constrained.astype(float)
-    )
+    found = optimise.minimise(fit, np.tile(starts, (len(use), 1)), np.repeat(use, count, axis=0), prior=False)
     chi2 = found.chi2.reshape(len(use), count)
     best = int(np.argmin(chi2[0]))
     # A fit without an observation can never be worse than the fit with it.

@@ -1,4 +1,4 @@
-"""The surface-flux table: Kurucz 1993 above 4250 K, observed spectra of cool dwarfs and giants below."""
+"""The surface-flux table: observed cool stars, Kurucz 1993 from 4250 to 50000 K, scaled beyond."""
 
 from __future__ import annotations
 
@@ -8,7 +8,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from . import blue_correction
+from . import blue_correction, hot_stars
 from .cool_stars import dwarf_spectra, giant_spectra
 from .sources import Sources, fits_columns
 from .spectra import Array
@@ -133,12 +133,23 @@ def build_atmospheres(sources: Sources) -> Atmospheres:
     )
 
 
-def corrected_atmospheres(sources: Sources) -> Atmospheres:
-    """Return the surface-flux table with the corrections that were measured on real stars."""
-    table = build_atmospheres(sources)
+def blue_corrected(sources: Sources, table: Atmospheres) -> Atmospheres:
+    """Return the table with the blue correction that was measured on solar-type standard stars."""
     nodes = table.wavelength_angstrom
     blue = blue_correction.corrected(sources, nodes, table.teff_k, table.logg, table.ln_flux)
     return replace(table, ln_flux=blue)
+
+
+def extended(table: Atmospheres, white_dwarfs: Mapping[str, np.ndarray], pivots: Mapping[str, float]) -> Atmospheres:
+    """Return the table with the surfaces hotter than 50000 K appended; all of them are marked as filled."""
+    steps = hot_stars.ratio_mag(white_dwarfs, pivots, table.wavelength_angstrom)
+    block = hot_stars.hot_block(table.wavelength_angstrom, table.ln_flux[-1], steps)
+    return replace(
+        table,
+        teff_k=np.concatenate([table.teff_k, hot_stars.HOT_TEFF_K]),
+        ln_flux=np.concatenate([table.ln_flux, block]),
+        filled=np.concatenate([table.filled, np.ones(block.shape[:2], dtype=bool)]),
+    )
 
 
 def as_arrays(table: Atmospheres) -> dict[str, np.ndarray]:

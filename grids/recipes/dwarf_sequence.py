@@ -79,7 +79,7 @@ def _value(word: str) -> str:
 
 
 def build_dwarf_sequence(sources: Sources) -> str:
-    """Return dwarf_sequence.csv: one row per spectral type from O3V to Y2V, missing values empty.
+    """Return dwarf_sequence.csv: one row per spectral type from O3V to Y4V, missing values empty.
 
     Source: Pecaut & Mamajek 2013, ApJS 208, 9, table version 2022.04.16. Gaia colours are of DR2, g-r, i-z of SDSS.
     """

@@ -7,7 +7,6 @@ stars; bands that neither covers take the range of errors found when the recipe 
 
 from __future__ import annotations
 
-import csv
 from collections.abc import Mapping, Sequence
 from typing import Any
 
@@ -15,6 +14,7 @@ import numpy as np
 
 from .blue_correction import STARS, interpolate
 from .passbands import Curve, hat_weights
+from .sequence import CHAINS, chain_minus, sequence_stars
 from .sources import Sources, fits_columns
 from .spectra import Array
 from .write import rounded
@@ -56,27 +56,9 @@ LOGG_GIANT_BELOW = 3.0
 COOL_GIANT_MAG = 0.15
 COOL_GIANT_BELOW_K = 4200.0
 GIANT_EXTRA_MAG = 0.03  # no measured correction reaches giants; blueward of 5000 A twice this
+COOL_DWARF_BELOW_K = 4500.0
+COOL_SHARE = 0.5  # the sequence also shaped these spectra: at least half of what bands left out of the fit miss
 MIN_STARS = 1.5  # effective number of sequence rows below which a band counts as not measured
-GRAVITY_SUN_CGS = 27423.2
-TEFF_SUN_K = 5772.0
-# One colour chain per band of the mean dwarf sequence, each from M_V. Gaia is DR2 there: offsets of 0.02 are its own.
-_CHAINS: Mapping[str, tuple[tuple[str, int], ...]] = {
-    "Generic/Johnson.U": (("B-V", 1), ("U-B", 1)),
-    "Generic/Johnson.B": (("B-V", 1),),
-    "Generic/Johnson.V": (),
-    "Generic/Cousins.R": (("V-R", -1),),
-    "Generic/Cousins.I": (("V-I", -1),),
-    "GAIA/GAIA3.G": (("G-V", 1),),
-    "GAIA/GAIA3.Grp": (("G-V", 1), ("G-RP", -1)),
-    "GAIA/GAIA3.Gbp": (("G-V", 1), ("G-RP", -1), ("BP-RP", 1)),
-    "2MASS/2MASS.Ks": (("V-Ks", -1),),
-    "2MASS/2MASS.H": (("V-Ks", -1), ("H-Ks", 1)),
-    "2MASS/2MASS.J": (("V-Ks", -1), ("H-Ks", 1), ("J-H", 1)),
-    "WISE/WISE.W1": (("V-Ks", -1), ("Ks-W1", -1)),
-    "WISE/WISE.W2": (("V-Ks", -1), ("Ks-W1", -1), ("W1-W2", -1)),
-    "WISE/WISE.W3": (("V-Ks", -1), ("Ks-W1", -1), ("W1-W3", -1)),
-    "WISE/WISE.W4": (("V-Ks", -1), ("Ks-W1", -1), ("W1-W4", -1)),
-}
 # Errors found when the recipe was first tried: upper temperature of the range, then U, optical, near and mid infrared.
 _FIRST_FOUND = (
     (2700.0, 0.30, 0.27, 0.05, 0.05),
@@ -136,25 +118,14 @@ class Photometer:
         return np.asarray(-2.5 * np.log10(self.weights @ self.surface_flux(teff_k, logg) * dilution / self.zero))
 
 
-def sequence_stars(csv_text: str, coolest_k: float, hottest_k: float) -> list[dict[str, float]]:
-    """Return rows of the dwarf sequence with radius from log L (its R disagrees at B5-B8) and log g; NaN if missing."""
-    stars = []
-    for row in csv.DictReader(csv_text.splitlines()):
-        star = {key: float(value) if value else np.nan for key, value in row.items() if key != "spectral_type"}
-        if coolest_k <= star["teff_k"] <= hottest_k and np.isfinite(star["mass_msun"] + star["M_V"]):
-            radius = 10 ** (0.5 * star["log_luminosity_lsun"]) * (TEFF_SUN_K / star["teff_k"]) ** 2
-            stars.append(star | {"radius": radius, "logg": np.log10(GRAVITY_SUN_CGS * star["mass_msun"] / radius**2)})
-    return stars
-
-
 def sequence_residuals(photometer: Photometer, stars: Sequence[Mapping[str, float]]) -> Array:
     """Return (n_stars, n_bands) synthetic minus published absolute magnitude, NaN where not published."""
     out = np.full((len(stars), len(photometer.ids)), np.nan)
     for i, star in enumerate(stars):
         synthetic = photometer.absolute_mag(star["teff_k"], star["logg"], star["radius"])
         for j, band in enumerate(photometer.ids):
-            if band in _CHAINS:
-                out[i, j] = synthetic[j] - star["M_V"] - sum(sign * star[colour] for colour, sign in _CHAINS[band])
+            if band in CHAINS:
+                out[i, j] = synthetic[j] - star["M_V"] - chain_minus(star, band, "Generic/Johnson.V")
     return out
 
 
@@ -198,7 +169,8 @@ def build_model_error(
     pivots_angstrom: Sequence[float],
 ) -> dict[str, Any]:
     """Return the content of model_error.json."""
-    stars = sequence_stars(sequence_csv, float(photometer.teff_k[0]), float(photometer.teff_k[-1]))
+    rows = sequence_stars(sequence_csv, float(photometer.teff_k[0]), float(photometer.teff_k[-1]))
+    stars = [star for star in rows if np.isfinite(star["logg"] + star["M_V"])]
     star_teff = np.array([star["teff_k"] for star in stars])
     residuals = sequence_residuals(photometer, stars)
     standard_teff, standard = standard_residuals(sources, photometer, curves)
@@ -208,6 +180,8 @@ def build_model_error(
         by_sequence = windowed_rms(star_teff, residuals, node)
         both = np.where(np.isfinite(by_sequence), by_sequence, by_standards)
         start = np.array([first_found_mag(pivot, node) for pivot in pivots_angstrom])
+        if node < COOL_DWARF_BELOW_K:
+            both = np.maximum(both, COOL_SHARE * start)
         ultraviolet = np.array(pivots_angstrom) < _NUV[0]
         dwarf[i] = np.maximum(np.where(np.isfinite(both) & ~ultraviolet, both, start), FLOOR_MAG)
     extra = GIANT_EXTRA_MAG * np.where(np.array(pivots_angstrom) < 5000.0, 2.0, 1.0)

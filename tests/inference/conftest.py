@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 from scipy.special import log_ndtr
 
-from vetter.inference.problem import Evaluation
+from vetter.inference.problem import Evaluation, open_ground
 
 
 class GaussianProblem:
@@ -15,11 +15,13 @@ class GaussianProblem:
     def __init__(self, dimension: int, width: float, centre: float, wall: float | None = None) -> None:
         self.dimension, self.width, self.centre, self.wall = dimension, width, centre, wall
         self.ln_norm = -dimension * np.log(width * np.sqrt(2.0 * np.pi))
-        self.constrained = np.zeros(dimension, dtype=bool)
 
     def evaluate(self, x: np.ndarray) -> Evaluation:
-        closed = np.zeros(len(x), dtype=bool) if self.wall is None else x[:, 0] > self.wall
-        return Evaluation((x - self.centre) / self.width, np.where(closed, -np.inf, 0.0))
+        free = open_ground((x - self.centre) / self.width)
+        if self.wall is None:
+            return free
+        excess = x[:, 0] - self.wall
+        return free._replace(ln_prior_ratio=np.where(excess > 0.0, -np.inf, 0.0), excess=excess)
 
     @property
     def truth(self) -> float:
@@ -37,13 +39,12 @@ class TwoModes:
     def __init__(self, dimension: int, width: float = 0.1, centre: float = 1.5) -> None:
         self.dimension, self.width, self.centre = dimension, width, centre
         self.ln_norm = float(np.log1p(np.exp(-1.0)))
-        self.constrained = np.zeros(dimension, dtype=bool)
 
     def evaluate(self, x: np.ndarray) -> Evaluation:
         first = -0.5 * np.sum(((x - self.centre) / self.width) ** 2, axis=1)
         second = -1.0 - 0.5 * np.sum(((x + self.centre) / self.width) ** 2, axis=1)
         below = np.logaddexp(first, second) - self.ln_norm
-        return Evaluation(np.sqrt(np.maximum(-2.0 * below, 0.0))[:, None], np.zeros(len(x)))
+        return open_ground(np.sqrt(np.maximum(-2.0 * below, 0.0))[:, None])
 
     @property
     def truth(self) -> float:
@@ -58,12 +59,9 @@ class Banana:
     dimension = 4
     ln_norm = 0.0
 
-    def __init__(self) -> None:
-        self.constrained = np.zeros(self.dimension, dtype=bool)
-
     def evaluate(self, x: np.ndarray) -> Evaluation:
         valley = (x[:, 1:] - x[:, :-1] ** 2 + 1.0) / 0.1
-        return Evaluation(np.concatenate([valley, (x[:, :1] - 0.5) / 0.5], axis=1), np.zeros(len(x)))
+        return open_ground(np.concatenate([valley, (x[:, :1] - 0.5) / 0.5], axis=1))
 
 
 @pytest.fixture

@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 
 from vetter.inference.importance import Settings, sample
-from vetter.inference.problem import Evaluation
+from vetter.inference.problem import Evaluation, open_ground
 
 SETTINGS = Settings()
 
@@ -74,10 +74,9 @@ class _Closed:
     """Every point is walled off."""
 
     dimension, ln_norm = 3, 0.0
-    constrained = np.zeros(3, dtype=bool)
 
     def evaluate(self, x: np.ndarray) -> Evaluation:
-        return Evaluation(x, np.full(len(x), -np.inf))
+        return open_ground(x)._replace(ln_prior_ratio=np.full(len(x), -np.inf), excess=np.ones(len(x)))
 
 
 def test_a_closed_prior_returns_nothing():

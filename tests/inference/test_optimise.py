@@ -7,14 +7,13 @@ import pytest
 from scipy.optimize import least_squares
 
 from vetter.inference.optimise import minimise
-from vetter.inference.problem import LARGEST_COORDINATE, Evaluation
+from vetter.inference.problem import LARGEST_COORDINATE, Evaluation, open_ground
 
 
 class _Curve:
     """A decaying wave through noisy points: four coordinates, twenty residuals."""
 
     dimension, ln_norm = 4, 0.0
-    constrained = np.array([False, False, False, True])
 
     def __init__(self) -> None:
         self.t = np.linspace(0.0, 4.0, 20)
@@ -23,7 +22,11 @@ class _Curve:
 
     def evaluate(self, x: np.ndarray) -> Evaluation:
         wave = x[:, :1] * np.exp(-0.4 * self.t) * np.cos(x[:, 1:2] * self.t + x[:, 2:3]) + x[:, 3:4]
-        return Evaluation((wave - self.y) / 0.02, np.where(x[:, 0] > 0.0, 0.0, -np.inf))
+        free = open_ground((wave - self.y) / 0.02)
+        closed = x[:, 0] < 0.0
+        return free._replace(
+            nuisances=x[:, 3:4], ln_prior_ratio=np.where(closed, -np.inf, 0.0), excess=np.where(closed, 1.0, -1.0)
+        )
 
 
 def _scipy(problem: _Curve, start: np.ndarray, pull: np.ndarray, keep: np.ndarray) -> float:
@@ -35,30 +38,46 @@ def _scipy(problem: _Curve, start: np.ndarray, pull: np.ndarray, keep: np.ndarra
 
 def test_every_start_ends_where_scipy_does():
     problem = _Curve()
-    pull = problem.constrained.astype(float)
+    pull = np.array([0.0, 0.0, 0.0, 1.0])
     starts = np.array([[1.0, 1.9, 0.2, 0.0], [1.5, 2.1, 0.5, 0.2], [0.8, 2.0, 0.0, -0.2]])
     keep = np.ones((3, 20))
     keep[1, 5:9] = 0.0
-    found = minimise(problem, starts, keep, pull)
+    found = minimise(problem, starts, keep, prior=False)
     for row, start in enumerate(starts):
         assert found.chi2[row] == pytest.approx(_scipy(problem, start, pull, keep[row]), rel=1e-5)
 
 
-def test_a_start_behind_a_wall_stays_out():
-    found = minimise(_Curve(), np.array([[-1.0, 2.0, 0.3, 0.0]]), np.ones((1, 20)), np.zeros(4))
-    assert found.chi2[0] == np.inf
+def test_a_smooth_wall_is_leant_on(gaussian):
+    """The best point beyond a wall is the point of the wall itself."""
+    found = minimise(gaussian(3, 0.1, 1.0, wall=0.5), np.zeros((1, 3)), np.ones((1, 3)), prior=False)
+    np.testing.assert_allclose(found.x[0], [0.5, 1.0, 1.0], atol=1e-4)
+    assert found.chi2[0] == pytest.approx(25.0, rel=1e-4)
+    assert found.gradient[0] == pytest.approx([-50.0, 0.0, 0.0], abs=1e-2)
+
+
+class _Closed:
+    """No open ground at all, and no hint where it might be."""
+
+    dimension, ln_norm = 2, 0.0
+
+    def evaluate(self, x: np.ndarray) -> Evaluation:
+        n = len(x)
+        return open_ground(x)._replace(ln_prior_ratio=np.full(n, -np.inf), excess=np.ones(n))
+
+
+def test_closed_ground_has_no_best_fit():
+    assert minimise(_Closed(), np.zeros((3, 2)), np.ones((3, 2)), prior=False).chi2.tolist() == [np.inf] * 3
 
 
 class _Runaway:
     """The best point lies far outside the box."""
 
     dimension, ln_norm = 2, 0.0
-    constrained = np.zeros(2, dtype=bool)
 
     def evaluate(self, x: np.ndarray) -> Evaluation:
-        return Evaluation(x - np.array([100.0, 1.0]), np.zeros(len(x)))
+        return open_ground(x - np.array([100.0, 1.0]))
 
 
 def test_the_box_holds_and_the_other_coordinate_still_converges():
-    found = minimise(_Runaway(), np.zeros((1, 2)), np.ones((1, 2)), np.zeros(2))
+    found = minimise(_Runaway(), np.zeros((1, 2)), np.ones((1, 2)), prior=False)
     np.testing.assert_allclose(found.x[0], [LARGEST_COORDINATE, 1.0], atol=1e-3)

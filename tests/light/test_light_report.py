@@ -8,7 +8,7 @@ import numpy as np
 import pytest
 
 from vetter.errors import InputError
-from vetter.light.report import DEFAULT_BANDS, bands_report, light_report
+from vetter.light.report import bands_report, light_report, render_bands, render_light
 from vetter.light.tables import LightTables, load_tables
 
 SUN = (5777.0, 4.44, 1.0, 0.0)
@@ -45,9 +45,13 @@ def test_reddening_is_r_v_times_excess(world: LightTables) -> None:
     assert other["total_mag"] - one["total_mag"] == pytest.approx(3.1, rel=0.02)
 
 
-def test_default_bands_are_all_built_in() -> None:
-    assert set(DEFAULT_BANDS) <= set(load_tables().passbands)
-    assert list(light_report([SUN], 10.0)["bands"]) == list(DEFAULT_BANDS)
+def test_all_bands_by_default() -> None:
+    assert list(light_report([SUN], 10.0)["bands"]) == list(load_tables().passbands)
+
+
+def test_metallicity_may_be_left_out(world: LightTables) -> None:
+    short, full = (light_report([star], 10.0, bands=["V-like"], tables=world) for star in (SUN[:3], SUN))
+    assert short == full
 
 
 def test_short_names_are_understood() -> None:
@@ -74,6 +78,30 @@ def test_every_fault_at_once() -> None:
         "distance_pc",
         "ebv_mag",
     ]
+
+
+def test_wrong_counts_of_numbers() -> None:
+    with pytest.raises(InputError) as caught:
+        light_report([(5777.0, 4.44), SUN], 10.0, windows_nm=[(500.0, 510.0, 520.0)])
+    assert [fault.key for fault in caught.value.faults] == ["star 1", "window"]
+
+
+def test_printed_light(world: LightTables) -> None:
+    windows = [(540.0, 560.0)]
+    report = light_report([SUN, (4000.0, 4.6, 0.6, 0.3)], 10.0, bands=["V-like"], windows_nm=windows, tables=world)
+    head, visual, window, caution = render_light(report).splitlines()
+    assert head.split() == ["band", "system", "total", "star", "1", "star", "2"]
+    assert visual.split()[:2] == ["Generic/Johnson.V", "Vega"]
+    assert float(visual.split()[2]) == pytest.approx(report["bands"]["Generic/Johnson.V"]["total_mag"], abs=5e-4)
+    assert window.startswith("light ratio to star 1, 540-560 nm")
+    assert window.split()[-2] == "1"
+    assert caution == report["cautions"][0]
+
+
+def test_printed_bands_fit_the_screen() -> None:
+    lines = render_bands(bands_report()).splitlines()
+    assert len(lines) == len(load_tables().passbands) + 1
+    assert max(map(len, lines)) <= 120
 
 
 @pytest.mark.parametrize("distance_pc", [0.0, float("inf"), float("nan")])

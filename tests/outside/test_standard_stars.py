@@ -100,7 +100,7 @@ def test_vega_has_the_magnitude_it_is_given(band: str, mag: float) -> None:
     assert magnitude(band, "vega_stis") == pytest.approx(mag, abs=1e-5)
 
 
-# Landolt & Uomoto 2007, AJ 133, 768: U B V R I. BD+17 4708 as in that paper; the others V, B-V, U-B, V-R, V-I from memory.
+# U B V R I of Landolt & Uomoto 2007, AJ 133, 768; V and B-V as CALSPEC lists them, the other colours from memory.
 LANDOLT = {
     "bd17": (9.724, 9.907, 9.464, 9.166, 8.846),
     "g191b2b": (10.250, 11.455, 11.781, 11.930, 12.108),
@@ -175,16 +175,16 @@ def test_table_gives_the_sun(band: str) -> None:
     ("star", "teff_k", "logg"), [("sun", 5777, 4.44), ("p041c", 5890, 4.4), ("hd209458", 6070, 4.36)]
 )
 def test_colours_of_solar_type_stars(star: str, teff_k: float, logg: float) -> None:
-    """The table against real spectra, relative to V: 0.03 mag in the optical, 0.05 in U; temperatures fit the infrared."""
+    """The table against real spectra, relative to V: 0.035 mag, 0.06 in U; the temperatures fit the infrared."""
     _, flux = table_flux(teff_k, logg)
     residual = {}
     for index, band in enumerate(bands()):
         limits = bands()[band][1][[0, -1]]
-        if 2900 < limits[0] and limits[1] < 25000:
+        if limits[0] > 2900 and limits[1] < 25000:
             residual[band] = -2.5 * np.log10(weights()[index] @ flux / mean_flux(band, star))
     for band, value in residual.items():
         blue = bands()[band][0]["pivot_angstrom"] < 4000
-        assert value - residual[JOHNSON_V] == pytest.approx(0, abs=0.05 if blue else 0.03), band
+        assert value - residual[JOHNSON_V] == pytest.approx(0, abs=0.06 if blue else 0.035), band
 
 
 @pytest.mark.parametrize(

@@ -10,7 +10,9 @@ from hypothesis import strategies as st
 from vetter.physics.roche import roche_lobe_fraction, roche_lobe_rsun
 
 
-@pytest.mark.parametrize(("q", "fraction"), [(0.1, 0.20677), (0.5, 0.32079), (1.0, 0.37892), (2.0, 0.44), (10, 0.57817)])
+@pytest.mark.parametrize(
+    ("q", "fraction"), [(0.1, 0.20677), (0.5, 0.32079), (1.0, 0.37892), (2.0, 0.44), (10.0, 0.57817)]
+)
 def test_worked_values(q: float, fraction: float) -> None:
     # Eggleton 1983, ApJ 268, 368, eq. 2, worked to five digits.
     assert roche_lobe_fraction(q) == pytest.approx(fraction, abs=1e-5)

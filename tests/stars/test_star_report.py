@@ -9,7 +9,7 @@ import pytest
 
 from vetter.errors import InputError
 from vetter.stars.main_sequence import main_sequence
-from vetter.stars.report import KINDS, star_report
+from vetter.stars.report import KINDS, render_star, star_report
 
 KEYS = {"teff_k", "radius_rsun", "luminosity_lsun", "logg", "mass_msun", "lifetime_myr"}
 
@@ -36,7 +36,7 @@ def test_white_dwarf_has_no_lifetime() -> None:
 
 
 def test_unknown_kind_lists_the_kinds() -> None:
-    with pytest.raises(InputError, match="main_sequence, white_dwarf"):
+    with pytest.raises(InputError, match="main_sequence, helium, white_dwarf"):
         star_report("quark", 1.0)
 
 
@@ -48,7 +48,8 @@ def test_all_faults_are_told_at_once() -> None:
 
 
 @pytest.mark.parametrize(
-    ("kind", "mass"), [("white_dwarf", 1.5), ("white_dwarf", 0.01), ("main_sequence", 0.05), ("main_sequence", math.nan)]
+    ("kind", "mass"),
+    [("white_dwarf", 1.5), ("white_dwarf", 0.01), ("main_sequence", 0.05), ("main_sequence", math.nan)],
 )
 def test_mass_out_of_range(kind: str, mass: float) -> None:
     with pytest.raises(InputError, match="--mass"):
@@ -59,3 +60,18 @@ def test_white_dwarf_temperature_can_be_chosen() -> None:
     assert star_report("white_dwarf", 0.6, white_dwarf_teff_k=2e4)["teff_k"] == 2e4
     with pytest.raises(InputError, match="--teff"):
         star_report("white_dwarf", 0.6, white_dwarf_teff_k=1e6)
+
+
+def test_helium_star_lives_on_helium() -> None:
+    # Hurley, Pols & Tout 2000, eq. 79: 1 Msun burns helium for 0.4129 + 18.81 + 1.853 = 21.08 Myr.
+    assert star_report("helium", 1.0)["lifetime_myr"] == pytest.approx(21.0759)
+    with pytest.raises(InputError, match=r"0\.3 to 15 solar masses"):
+        star_report("helium", 0.1)
+
+
+def test_screen_shows_every_quantity_with_its_unit() -> None:
+    lines = render_star(star_report("white_dwarf", 0.6)).splitlines()
+    assert lines[0] == "mass        0.6 Msun"
+    assert lines[-1] == "lifetime    -"
+    assert len(lines) == len(KEYS)
+    assert "lifetime    11003 Myr" in render_star(star_report("main_sequence", 1.0))

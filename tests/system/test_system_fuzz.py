@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+import re
 import tomllib
 from collections.abc import Mapping
 from pathlib import Path
@@ -24,6 +25,10 @@ ODD_VALUES = [
 ]  # fmt: skip
 PIECES = [*"=[]\"'\n#,.-09e_ \0\ré{}", "[[", "]]"]
 
+NUMBER = re.compile(r"-?[0-9.]+")
+# A nudge mostly leaves the file valid, with other values, so that being accepted is tried as often as being refused.
+ACTIONS = ["nudge"] * 8 + ["value", "key", "drop", "repeat", "swap", "characters", "cut"]
+
 
 @st.composite
 def mutated(draw: st.DrawFn, text: str) -> str:
@@ -31,10 +36,12 @@ def mutated(draw: st.DrawFn, text: str) -> str:
     for _ in range(draw(st.integers(1, 4))):
         lines = text.split("\n")
         at = draw(st.integers(0, len(lines) - 1))
-        action = draw(st.sampled_from(["value", "key", "drop", "repeat", "swap", "characters", "cut"]))
-        key, equals, _value = lines[at].partition(" = ")
+        action = draw(st.sampled_from(ACTIONS))
+        key, equals, value = lines[at].partition(" = ")
         if action == "value" and equals:
             lines[at] = f"{key} = {draw(st.sampled_from(ODD_VALUES))}"
+        elif action == "nudge" and NUMBER.fullmatch(value):
+            lines[at] = f"{key} = {float(value) * draw(st.floats(0.97, 1.0))!r}"
         elif action == "key":
             place = draw(st.integers(0, max(len(key) - 1, 0)))
             lines[at] = lines[at][:place] + lines[at][place + 1 :]

@@ -65,7 +65,7 @@ def _generalised_pareto_shape(excess: FloatArray) -> float:
     theta = 1.0 / excess[-1] + (1.0 - np.sqrt(grid / (np.arange(1, grid + 1) - 0.5))) / (3.0 * quartile)
     shape = np.log1p(-theta[:, None] * excess).mean(axis=1)
     profile = count * (np.log(-theta / shape) - shape - 1.0)
-    weights = 1.0 / np.exp(profile - profile[:, None]).sum(axis=1)
+    weights = 1.0 / np.exp(np.minimum(profile - profile[:, None], 700.0)).sum(axis=1)
     best = float(np.sum(theta * weights) / np.sum(weights))
     k = float(np.log1p(-best * excess).mean())
     return (count * k + 10 * 0.5) / (count + 10)

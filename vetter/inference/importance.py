@@ -1,8 +1,8 @@
 """Adaptive tempered importance sampling: ln evidence, posterior samples and the modes of a likelihood.
 
 The order of work: scrambled Sobol points over the prior; the best of them are polished; a mixture of t densities
-around the polished points proposes; where it fits badly the likelihood is flattened to a temperature at which a
-tenth of the points still count, the mixture is refitted, and the temperature is brought back to one step by step.
+around the polished points proposes; where it fits badly the weights are flattened until a tenth of the points still
+count, the mixture is refitted, and so step by step until it fits.
 The numbers that are reported come from the last, fresh set of draws only, so that adapting cannot bias them.
 """
 
@@ -17,6 +17,16 @@ from vetter.inference import diagnostics, optimise, student
 from vetter.inference.problem import LARGEST_COORDINATE, Evaluation, Problem, ln_likelihood
 
 FloatArray = NDArray[np.float64]
+
+
+MODE_SHARE = 0.4
+"""Share of the first draws around polished points; the rest follows the prior points."""
+
+MODE_STRETCH = 4.0
+"""Variance of the first draws around a polished point over its Gaussian variance: too wide is safer than too narrow."""
+
+ENOUGH_SHARE = 0.1
+"""Share of the draws that must be effective for a refit to be safe."""
 
 
 @dataclass(frozen=True)
@@ -82,7 +92,7 @@ def sample(
     """Return the posterior of ``problem``, or None when no starting point is on allowed ground.
 
     ``start`` (n, dimension) replaces the Sobol points over the prior that the search for modes begins with.
-    Tempering: Neal 2001 (Statistics and Computing 11, 125); truncated weights while adapting: Ionides 2008
+    Annealed path: Neal 2001 (Statistics and Computing 11, 125); truncated weights while adapting: Ionides 2008
     (J. Comp. Graph. Stat. 17, 295); the mixture proposal: Cappe et al. 2008 (Statistics and Computing 18, 447).
     """
     rng = np.random.default_rng(seed)
@@ -91,8 +101,8 @@ def sample(
     first = _evaluate(problem, start)
     if not np.isfinite(first).any():
         return None
-    mixture, modes = _first_proposal(problem, start, first, settings)
-    mixture, evaluations = _adapt(problem, mixture, modes, settings, rng)
+    mixture, modes = _first_proposal(problem, start, first, settings, rng)
+    mixture, evaluations = _adapt(problem, mixture, settings, rng)
     x, ln_weights, more = _last_round(problem, mixture, settings, rng)
     ln_evidence, error = diagnostics.ln_evidence_and_error(ln_weights)
     effective = diagnostics.effective_sample_size(ln_weights)
@@ -127,24 +137,28 @@ def _ln_normal(x: FloatArray) -> FloatArray:
 
 
 def _first_proposal(
-    problem: Problem, x: FloatArray, ln_target: FloatArray, settings: Settings
+    problem: Problem, x: FloatArray, ln_target: FloatArray, settings: Settings, rng: np.random.Generator
 ) -> tuple[student.StudentMixture, FloatArray]:
-    """Polish the best prior points and put a t density around each distinct end point, plus one over the prior."""
+    """Return what the prior points suggest, with a t density around each distinct polished point, and those points.
+
+    The prior points give the wide view that no mode can give, the polished points the narrow one that no point has hit.
+    """
+    weights = _truncated(_flattened(ln_target))
+    mixture = student.with_wide_component(student.fit(x, weights, settings.components, rng), x, weights)
     best = np.argsort(-ln_target)[: settings.polish_starts]
     best = best[np.isfinite(ln_target[best])]
     use = np.ones((best.size, problem.evaluate(x[:1]).residuals.shape[1]))
-    found = optimise.minimise(problem, x[best], use, np.ones(problem.dimension))
-    precision = np.einsum("bmi,bmj->bij", found.jacobian, found.jacobian)
-    covariance = np.linalg.inv(precision)
+    found = optimise.minimise(problem, x[best], use, prior=True)
+    # Where a wall holds the point, the density falls off exponentially from it: its scale is one over the gradient.
+    precision = found.curvature + np.einsum("bi,bj->bij", found.gradient, found.gradient)
     keep = _distinct(found.x, found.chi2, precision)
+    if keep.size == 0:
+        return mixture, x[best]
+    covariance = np.linalg.inv(precision[keep])
+    centre = found.x[keep] + np.einsum("bij,bj->bi", covariance, found.gradient[keep])
     height = np.exp(-0.5 * np.minimum(found.chi2[keep] - found.chi2[keep].min(), 40.0))
-    share = np.append(height / height.sum() + 0.05, 0.15)
-    identity = np.eye(problem.dimension)
-    mixture = student.from_moments(
-        share, np.vstack([found.x[keep], np.zeros((1, problem.dimension))]),
-        np.concatenate([1.5 * covariance[keep] + 1e-14 * identity, identity[None]]),
-    )
-    return mixture, found.x[keep]
+    narrow = student.from_moments(height / height.sum() + 0.05, centre, MODE_STRETCH * covariance)
+    return student.joined(mixture, narrow, MODE_SHARE), found.x[keep]
 
 
 def _distinct(x: FloatArray, chi2: FloatArray, precision: FloatArray, most: int = 6) -> NDArray[np.intp]:
@@ -161,35 +175,42 @@ def _distinct(x: FloatArray, chi2: FloatArray, precision: FloatArray, most: int 
 
 
 def _adapt(
-    problem: Problem, mixture: student.StudentMixture, modes: FloatArray, settings: Settings, rng: np.random.Generator
+    problem: Problem, mixture: student.StudentMixture, settings: Settings, rng: np.random.Generator
 ) -> tuple[student.StudentMixture, int]:
-    """Refit the mixture rung by rung until it proposes well at temperature one, or the rungs are used up."""
-    inverse_temperature, efficiency, evaluations = 0.0, 0.0, 0
-    best, best_efficiency = mixture, -1.0
+    """Refit the mixture rung by rung until it proposes well, or the rungs are used up; return the best one seen."""
+    evaluations, previous, best, best_efficiency = 0, 0.0, mixture, -1.0
     for _ in range(settings.rungs):
         x = mixture.draw(settings.rung_points, rng)
-        ln_target = _evaluate(problem, x)
+        ln_weights = _evaluate(problem, x) + _ln_normal(x) - mixture.ln_density(x)
         evaluations += x.shape[0]
-        ln_base = _ln_normal(x) - mixture.ln_density(x)
-        inverse_temperature = _next_temperature(ln_base, ln_target, inverse_temperature)
-        ln_weights = _tempered(ln_base, ln_target, inverse_temperature)
-        if inverse_temperature == 1.0:
-            previous, efficiency = efficiency, diagnostics.effective_sample_size(ln_weights) / x.shape[0]
-            if efficiency > best_efficiency:
-                best, best_efficiency = mixture, efficiency
-            if efficiency > 0.5 or (efficiency > 0.15 and efficiency < 1.15 * previous):
-                break
-        weights = _truncated(ln_weights)
+        efficiency = diagnostics.effective_sample_size(ln_weights) / x.shape[0]
+        if efficiency > best_efficiency:
+            best, best_efficiency = mixture, efficiency
+        if efficiency > 0.5 or 0.15 < efficiency < 1.15 * previous:
+            break
+        previous = efficiency
+        weights = _truncated(_flattened(ln_weights))
         if np.count_nonzero(weights) <= x.shape[1]:
             continue
         mixture = student.with_wide_component(student.fit(x, weights, settings.components, rng), x, weights)
-    return (best if best_efficiency > 0.0 else mixture), evaluations
+    return best, evaluations
 
 
-def _tempered(ln_base: FloatArray, ln_target: FloatArray, inverse_temperature: float) -> FloatArray:
-    """Ln weights with the target raised to a power; a wall stays a wall at every temperature."""
-    finite = np.isfinite(ln_target)
-    return np.where(finite, ln_base + inverse_temperature * np.where(finite, ln_target, 0.0), -np.inf)
+def _flattened(ln_weights: FloatArray) -> FloatArray:
+    """Ln weights raised to the largest power <= 1 that leaves ``ENOUGH_SHARE`` of the points effective.
+
+    It is a step on the geometric path from the proposal to the posterior: the path of annealed importance sampling
+    (Neal 2001), but starting from what is known already instead of the prior. A wall stays a wall.
+    """
+    wanted = ENOUGH_SHARE * ln_weights.size
+    if diagnostics.effective_sample_size(ln_weights) >= wanted:
+        return ln_weights
+    low, high = 0.0, 1.0
+    for _ in range(30):
+        middle = 0.5 * (low + high) if low > 0.0 else 0.1 * high
+        enough = diagnostics.effective_sample_size(middle * ln_weights) >= wanted
+        low, high = (middle, high) if enough else (low, middle)
+    return low * ln_weights if low > 0.0 else np.where(np.isfinite(ln_weights), 0.0, -np.inf)
 
 
 def _truncated(ln_weights: FloatArray) -> FloatArray:
@@ -199,22 +220,6 @@ def _truncated(ln_weights: FloatArray) -> FloatArray:
         return weights
     weights = np.minimum(weights, 1.0 / np.sqrt(weights.size))
     return np.asarray(weights / weights.sum())
-
-
-def _next_temperature(ln_base: FloatArray, ln_target: FloatArray, current: float) -> float:
-    """Largest inverse temperature that leaves a tenth of the points effective; at least 15 % further than now."""
-    def effective(value: float) -> float:
-        return diagnostics.effective_sample_size(_tempered(ln_base, ln_target, value))
-
-    wanted = 0.1 * ln_target.size
-    if effective(1.0) >= wanted:
-        return 1.0
-    low, high = current, 1.0
-    if effective(low) >= wanted:
-        for _ in range(40):
-            middle = 0.5 * (low + high) if low > 1e-3 * high else np.sqrt(max(low, 1e-9) * high)
-            low, high = (middle, high) if effective(middle) >= wanted else (low, middle)
-    return float(min(1.0, max(low, 1.15 * current, 1e-6)))
 
 
 def _last_round(

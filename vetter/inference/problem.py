@@ -9,8 +9,8 @@ from numpy.typing import NDArray
 
 FloatArray = NDArray[np.float64]
 
-LARGEST_COORDINATE = 7.5
-"""Normal coordinates are kept within this bound; beyond it the unit-cube map has no digits left."""
+LARGEST_COORDINATE = 35.0
+"""Normal coordinates are kept within this bound, where the prior density still is a number above zero."""
 
 
 class Evaluation(NamedTuple):
@@ -19,11 +19,15 @@ class Evaluation(NamedTuple):
     Attributes
     ----------
     residuals : (n, m) standardised residuals; ln likelihood = ln_norm - half their sum of squares
+    nuisances : (n, k) standard-normal scores that are part of the prior but count as data in the best fit
     ln_prior_ratio : (n,) ln(prior density / density implied by standard normal coordinates), -inf behind a wall
+    excess : (n,) how far behind the nearest wall a point lies, <= 0 on open ground; smooth where the wall is
     """
 
     residuals: FloatArray
+    nuisances: FloatArray
     ln_prior_ratio: FloatArray
+    excess: FloatArray
 
 
 class Problem(Protocol):
@@ -39,14 +43,15 @@ class Problem(Protocol):
         """Constant part of the ln likelihood."""
         ...
 
-    @property
-    def constrained(self) -> NDArray[np.bool_]:
-        """(dimension,) True for nuisances whose standard-normal prior counts as data in the best fit."""
-        ...
-
     def evaluate(self, x: FloatArray) -> Evaluation:
         """Return the evaluation at points ``x`` (n, dimension)."""
         ...
+
+
+def open_ground(residuals: FloatArray) -> Evaluation:
+    """Return an evaluation with these residuals (n, m), no walls, no nuisances, and the prior as it is drawn."""
+    n = residuals.shape[0]
+    return Evaluation(residuals, np.zeros((n, 0)), np.zeros(n), np.full(n, -1.0))
 
 
 def ln_likelihood(problem: Problem, residuals: FloatArray) -> FloatArray:

@@ -82,15 +82,19 @@ def from_moments(share: FloatArray, mean: FloatArray, covariance: FloatArray) ->
     return StudentMixture(share / share.sum(), mean, np.linalg.cholesky(covariance))
 
 
+def joined(first: StudentMixture, second: StudentMixture, share: float) -> StudentMixture:
+    """Return both mixtures together, the second with this share of the whole."""
+    return StudentMixture(
+        np.concatenate([first.share * (1.0 - share), second.share * share]),
+        np.vstack([first.mean, second.mean]),
+        np.concatenate([first.factor, second.factor]),
+    )
+
+
 def with_wide_component(mixture: StudentMixture, x: FloatArray, weights: FloatArray) -> StudentMixture:
     """Return the mixture with one component added that covers all weighted points twice as wide."""
     mean, covariance = _weighted_moments(x, weights)
-    wide = np.linalg.cholesky(4.0 * covariance)
-    return StudentMixture(
-        np.append(mixture.share * (1.0 - WIDE_SHARE), WIDE_SHARE),
-        np.vstack([mixture.mean, mean]),
-        np.concatenate([mixture.factor, wide[None]]),
-    )
+    return joined(mixture, from_moments(np.ones(1), mean[None], 4.0 * covariance[None]), WIDE_SHARE)
 
 
 def fit(x: FloatArray, weights: FloatArray, components: int, rng: np.random.Generator) -> StudentMixture:

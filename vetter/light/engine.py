@@ -15,7 +15,7 @@ from vetter.light.extinction import extinction_curve
 from vetter.light.magnitude_grid import MagnitudeGrid
 from vetter.light.passbands import custom_passband, find_band, window_weights
 from vetter.light.synthesis import Columns, magnitude_grid
-from vetter.light.tables import FloatArray, LightTables, Passband, load_tables
+from vetter.light.tables import FloatArray, LightTables, ModelErrorTable, Passband, load_tables
 from vetter.light.white_dwarfs import column_magnitudes, white_dwarf_grid, with_hot_end
 
 if TYPE_CHECKING:
@@ -68,7 +68,7 @@ class LightEngine:
     a_v_max_mag: float
     _grids: Mapping[str, MagnitudeGrid] = field(repr=False)
     _passbands: Mapping[str, Passband] = field(repr=False)
-    _tables: LightTables = field(repr=False)
+    _model_errors: ModelErrorTable = field(repr=False)
 
     @property
     def columns(self) -> tuple[str | Window, ...]:
@@ -116,7 +116,7 @@ class LightEngine:
         surfaces = column_magnitudes(tables.white_dwarfs, names, columns, tables.passbands, wavelength)
         dwarfs = white_dwarf_grid(tables.white_dwarfs, surfaces, stars)
         grids = {"star": with_hot_end(stars, dwarfs), "white_dwarf": dwarfs}
-        return cls(names, windows, in_system, tuple(pivots), r_v, a_v_max_mag, grids, known, tables)
+        return cls(names, windows, in_system, tuple(pivots), r_v, a_v_max_mag, grids, known, tables.model_errors)
 
     def magnitudes(self, component: Component, distance_pc: ArrayLike, a_v_mag: ArrayLike) -> FloatArray:
         """Return apparent magnitudes (n, n_columns) of n bodies at ``distance_pc`` (> 0) behind ``a_v_mag``.
@@ -148,7 +148,7 @@ class LightEngine:
         """Return the one-sigma error (mag) of a synthetic magnitude in ``band``; the arrays broadcast."""
         values = (np.asarray(value, dtype=float) for value in (teff_k, logg, feh))
         found = find_band(band, self._passbands)
-        return model_error.model_error_mag(self._tables.model_errors, found, self._tables.passbands, *values)
+        return model_error.model_error_mag(self._model_errors, found, self._passbands, *values)
 
     def total_magnitudes(self, magnitudes: Sequence[FloatArray]) -> FloatArray:
         """Return the magnitudes (n, k) of the summed light; see :func:`total_magnitudes`."""

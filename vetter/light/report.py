@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from typing import Any
 
 import numpy as np
@@ -12,34 +12,29 @@ from vetter.light.engine import Component, LightEngine, Window, total_magnitudes
 from vetter.light.tables import LightTables, load_tables
 from vetter.system.bands import canonical_band
 
-Star = tuple[float, float, float, float]
-"""Teff (K), log g (log10 cm/s2), radius (solar), [Fe/H] (dex)."""
-
-DEFAULT_BANDS = (
-    "Generic/Johnson.B",
-    "Generic/Johnson.V",
-    "GAIA/GAIA3.G",
-    "GAIA/GAIA3.Gbp",
-    "GAIA/GAIA3.Grp",
-    "SLOAN/SDSS.g",
-    "SLOAN/SDSS.r",
-    "2MASS/2MASS.J",
-    "2MASS/2MASS.H",
-    "2MASS/2MASS.Ks",
-    "WISE/WISE.W1",
-)
-"""Bands reported when none is named."""
+Star = Sequence[float]
+"""Teff (K), log g (log10 cm/s2), radius (solar) and, when it is not 0, [Fe/H] (dex)."""
 
 STAR_LIMITS = (("teff_k", 500.0, 500000.0), ("logg", -2.0, 10.0), ("radius_rsun", 1e-6, 1e5), ("feh", -6.0, 1.5))
 
 
-def _check(stars: Sequence[Star], distance_pc: float, ebv_mag: float) -> None:
+def _check(stars: Sequence[Star], windows_nm: Sequence[Sequence[float]], distance_pc: float, ebv_mag: float) -> None:
     """Raise one InputError with every fault in the numbers."""
     faults = [
         Fault(f"star {i + 1} {name}", repr(value), f"a number from {low:g} to {high:g}", "")
         for i, star in enumerate(stars)
-        for value, (name, low, high) in zip(star, STAR_LIMITS, strict=True)
+        for value, (name, low, high) in zip(star, STAR_LIMITS, strict=False)
         if not low <= value <= high
+    ]
+    faults += [
+        Fault(f"star {i + 1}", repr(tuple(star)), "three or four numbers", "Give TEFF,LOGG,RADIUS[,FEH].")
+        for i, star in enumerate(stars)
+        if len(star) not in (3, 4)
+    ]
+    faults += [
+        Fault("window", repr(tuple(window)), "two wavelengths in nm", "Give LO-HI.")
+        for window in windows_nm
+        if len(window) != 2
     ]
     if not stars:
         faults.append(Fault("star", "", "at least one star", "Give --star TEFF,LOGG,RADIUS[,FEH]."))
@@ -68,20 +63,22 @@ def light_report(
     ebv_mag: float = 0.0,
     r_v: float = 3.1,
     bands: Sequence[str] = (),
-    windows_nm: Sequence[Window] = (),
+    windows_nm: Sequence[Sequence[float]] = (),
     tables: LightTables | None = None,
 ) -> dict[str, Any]:
     """Return magnitudes of each star and of their sum, and light ratios to the first star in windows.
 
     The form is ``{"bands": {id: {"system", "total_mag", "star_mag": [...]}}, "windows": [{"wavelength_nm",
-    "ratio_to_first": [...]}]}``; a list ``cautions`` is added when there is something to say. Without ``bands`` a
-    usual set is reported. A_V = R_V E(B-V). Raises InputError naming everything that is out of range.
+    "ratio_to_first": [...]}]}``; a list ``cautions`` is added when there is something to say. Without ``bands`` all
+    that are built in are reported. A_V = R_V E(B-V). Raises InputError naming everything that is out of range.
     """
-    _check(stars, distance_pc, ebv_mag)
-    names = [canonical_band(name) or name for name in bands or DEFAULT_BANDS]
+    _check(stars, windows_nm, distance_pc, ebv_mag)
+    tables = tables or load_tables()
+    names = [canonical_band(name) or name for name in bands or tables.passbands]
+    windows: list[Window] = [(low, high) for low, high in windows_nm]
     a_v_mag = r_v * ebv_mag
-    engine = LightEngine.build(names, windows_nm, r_v=r_v, a_v_max_mag=a_v_mag, tables=tables)
-    teff_k, logg, radius_rsun, feh = np.array(stars, dtype=float).T
+    engine = LightEngine.build(names, windows, r_v=r_v, a_v_max_mag=a_v_mag, tables=tables)
+    teff_k, logg, radius_rsun, feh = np.array([[*star, 0.0][:4] for star in stars], dtype=float).T
     component = Component("star", teff_k, logg, feh, radius_rsun)
     magnitudes = engine.magnitudes(component, distance_pc, a_v_mag)
     total = total_magnitudes([row[None] for row in magnitudes])[0]
@@ -122,3 +119,30 @@ def bands_report(tables: LightTables | None = None) -> list[dict[str, Any]]:
         }
         for band in sorted(passbands, key=lambda band: band.pivot_angstrom)
     ]
+
+
+def render_light(report: Mapping[str, Any]) -> str:
+    """Return :func:`light_report`'s dictionary as a table, one line per band and per window."""
+    lines: list[str] = []
+    for band, entry in report["bands"].items():
+        if not lines:
+            stars = "".join(f"{f'star {i + 1}':>10}" for i in range(len(entry["star_mag"])))
+            lines.append(f"{'band':<24}{'system':<8}{'total':>10}{stars}")
+        star_mag = "".join(f"{magnitude:10.3f}" for magnitude in entry["star_mag"])
+        lines.append(f"{band:<24}{entry['system']:<8}{entry['total_mag']:10.3f}{star_mag}")
+    for window in report["windows"]:
+        low, high = window["wavelength_nm"]
+        ratios = "".join(f"{ratio:10.3g}" for ratio in window["ratio_to_first"])
+        lines.append(f"{f'light ratio to star 1, {low:g}-{high:g} nm':<42}{ratios}")
+    return "\n".join([*lines, *report.get("cautions", ())]) + "\n"
+
+
+def render_bands(records: Sequence[Mapping[str, Any]]) -> str:
+    """Return :func:`bands_report`'s records as a table; wavelengths in nm, zero fluxes in erg s-1 cm-2 A-1."""
+    lines = [f"{'band':<24}{'system':<8}{'pivot nm':>10}{'width nm':>10}{'f(Vega 0)':>12}{'f(AB 0)':>12}  reference"]
+    lines += [
+        f"{band['id']:<24}{band['system']:<8}{band['pivot_nm']:10.2f}{band['width_nm']:10.2f}"
+        f"{band['zero_flux_vega']:12.3e}{band['zero_flux_ab']:12.3e}  {band['reference'][:42]}"
+        for band in records
+    ]
+    return "\n".join(lines) + "\n"

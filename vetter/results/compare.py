@@ -86,7 +86,7 @@ def _row(
 ) -> ScenarioVerdict:
     best = run.best
     n_data = sum(observation.count for observation in observations)
-    n_scores = int(best.fit.constrained.sum())
+    n_scores = sum(parameter.counts for parameter in best.fit.branch.parameters)
     closed = sigma is None
     evidence = run.ln_evidence
     return ScenarioVerdict(

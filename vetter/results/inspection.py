@@ -76,15 +76,15 @@ def _seen_star(system: System, rng: np.random.Generator) -> tuple[SeenStarState,
     draws: dict[str, FloatArray] = {}
     for parameter in kind.parameters(system.primary):
         measured = given.get(parameter.name)
-        unit = rng.random(DRAWS)
-        draws[parameter.name] = parameter.prior.from_unit(unit) if measured is None else _drawn(measured, rng)
-    star = kind.star(draws)
+        from_prior = parameter.prior.from_normal(rng.standard_normal(DRAWS))
+        draws[parameter.name] = from_prior if measured is None else _drawn(measured, rng)
+    star = kind.star(draws, rng.standard_normal(DRAWS), np.full(DRAWS, np.inf))
     mass = system.primary.mass_msun
     if mass is not None:
         drawn = np.maximum(_drawn(mass, rng), 0.01)
         return star._replace(mass_msun=drawn, radius_rsun=radius_from_gravity_rsun(drawn, star.logg)), "the mass given"
     if system.primary.teff_k is None or system.primary.logg is None:
-        drawn = np.asarray(GIANT_MASS_RANGE_MSUN[0] * (GIANT_MASS_RANGE_MSUN[1] / GIANT_MASS_RANGE_MSUN[0]) ** unit)
+        drawn = np.asarray(GIANT_MASS_RANGE_MSUN[0] * (GIANT_MASS_RANGE_MSUN[1] / GIANT_MASS_RANGE_MSUN[0]) ** rng.random(DRAWS))
         radius = radius_from_gravity_rsun(drawn, star.logg)
         return star._replace(mass_msun=drawn, radius_rsun=radius), "unknown: give teff_k and logg, or mass_msun"
     return star, kind.words

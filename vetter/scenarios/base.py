@@ -12,6 +12,7 @@ import pkgutil
 from abc import ABC, abstractmethod
 from collections.abc import Mapping
 from dataclasses import dataclass
+from functools import cached_property
 from typing import ClassVar, NamedTuple
 
 import numpy as np
@@ -29,15 +30,19 @@ from vetter.scenarios.seen_star import SeenStar, SeenStarState, ordinary_seen_st
 from vetter.system.model import Assumptions
 
 FloatArray = NDArray[np.float64]
-BoolArray = NDArray[np.bool_]
+
+NO_SEEN_STAR = "no ordinary star has the seen star's spectrum"
 
 _REGISTRY: dict[str, type[Scenario]] = {}
 
 
 class Wall(NamedTuple):
-    """A region of parameter space that is closed, and why, in words that can be printed."""
+    """A region of parameter space that is closed, and why, in words that can be printed.
 
-    closed: BoolArray
+    ``excess`` (n,) is above zero behind the wall and, where it can, tells how far.
+    """
+
+    excess: FloatArray
     words: str
 
 
@@ -92,60 +97,88 @@ class Scenario(ABC):
 
 @dataclass(frozen=True)
 class Sampled:
-    """One evaluation of a branch: predictions, prior weight, the walls met, and everything worth reporting."""
+    """One evaluation of a branch at n points.
+
+    Attributes
+    ----------
+    prediction : predicted quantities
+    ln_ratio : (n,) ln(prior / density drawn from), -inf behind a wall
+    walls : every wall, open or not
+    nuisances : (n, k) scores of published relations
+    values : parameters and derived quantities by name, each (n,)
+    """
 
     prediction: Prediction
     ln_ratio: FloatArray
     walls: tuple[Wall, ...]
+    nuisances: FloatArray
     values: Mapping[str, FloatArray]
 
 
 @dataclass(frozen=True)
 class Branch:
-    """A scenario with one kind of seen star: maps unit-cube points to predicted quantities."""
+    """A scenario with one kind of seen star: maps points in normal coordinates to predicted quantities."""
 
     scenario: Scenario
     seen: SeenStar
     context: Context
 
-    @property
-    def plain_parameters(self) -> list[Parameter]:
+    @cached_property
+    def free_parameters(self) -> list[Parameter]:
         """Parameters that are drawn independently, in the order of the first coordinates."""
         seen = self.seen.parameters(self.context.system.primary)
         return [*self.context.shared_parameters(), *seen, *self.scenario.companion_parameters()]
 
-    @property
+    @cached_property
     def parameters(self) -> list[Parameter]:
-        """All parameters: the plain ones, then mass and inclination of the orbit, which are drawn together."""
-        return [*self.plain_parameters, *self.orbit_draws.parameters(self.mass_prior)]
+        """All parameters: the free ones, then the seen star's mass, the companion's mass and the inclination."""
+        return [*self.free_parameters, self.seen.mass_parameter, *self.orbit_draws.parameters()]
 
-    @property
-    def mass_prior(self) -> LogUniform | Uniform:
-        """Prior of the companion's mass."""
-        return self.scenario.mass_prior(self.context.system.assumptions)
-
-    @property
+    @cached_property
     def orbit_draws(self) -> OrbitDraws:
         """The orbit's part of the map."""
         orbit = self.context.system.orbit
         error = 0.0 if orbit.k1_km_s is None else k1_error_km_s(orbit)
-        return OrbitDraws(orbit, error, measured_inclination(orbit))
+        prior = self.scenario.mass_prior(self.context.system.assumptions)
+        return OrbitDraws(orbit, error, measured_inclination(orbit), prior)
 
-    def sample(self, unit: FloatArray) -> Sampled:
-        """Return predictions for unit-cube points ``unit`` (n, number of parameters)."""
+    def sample(self, x: FloatArray) -> Sampled:
+        """Return predictions for points ``x`` (n, number of parameters) that are standard normal a priori."""
         draws: dict[str, FloatArray] = {}
-        ln_ratio = np.zeros(unit.shape[0])
-        for column, parameter in enumerate(self.plain_parameters):
-            draws[parameter.name], ratio = parameter.draw(unit[:, column])
+        ln_ratio = np.zeros(x.shape[0])
+        for column, parameter in enumerate(self.free_parameters):
+            draws[parameter.name], ratio = parameter.draw(x[:, column])
             ln_ratio = ln_ratio + ratio
-        star = self.seen.star(draws)
-        orbit = self.orbit_draws.draw(unit[:, -2], unit[:, -1], star.mass_msun, self.mass_prior)
+        star, orbit, walls = self._masses(draws, x)
         companion = self.scenario.companion(orbit.mass_msun, star.feh, draws)
         prediction = self._predict(draws, star, orbit, companion)
-        walls = (*self._walls(star, orbit, companion, prediction), *companion.walls)
+        walls += [*self._walls(star, orbit, companion, prediction), *companion.walls]
+        ln_ratio = ln_ratio + star.ln_ratio + orbit.ln_ratio
         for wall in walls:
-            ln_ratio = np.where(wall.closed, -np.inf, ln_ratio)
-        return Sampled(prediction, ln_ratio + orbit.ln_ratio, walls, draws | _derived(star, orbit, companion))
+            ln_ratio = np.where(wall.excess > 0.0, -np.inf, ln_ratio)
+        nuisances = [draws[parameter.name] for parameter in self.parameters if parameter.counts]
+        values = draws | _derived(star, orbit, companion, prediction)
+        return Sampled(prediction, ln_ratio, tuple(walls), np.stack(nuisances, axis=1), values)
+
+    def _masses(
+        self, draws: dict[str, FloatArray], x: FloatArray
+    ) -> tuple[SeenStarState, CompanionDraw, list[Wall]]:
+        """The seen star, then the companion that the orbit asks for, and the walls met on the way."""
+        x_seen, x_mass, x_inclination = x[:, -3], x[:, -2], x[:, -1]
+        velocity = self.orbit_draws.velocity(x_mass)
+        if velocity is None:
+            star = self.seen.star(draws, x_seen, np.full(len(x), np.inf))
+            orbit = self.orbit_draws.companion_from_prior(x_mass, x_inclination)
+            return star, orbit, [Wall(star.excess, NO_SEEN_STAR)]
+        star = self.seen.star(draws, x_seen, velocity.mass_max_msun)
+        orbit = self.orbit_draws.companion_from_velocity(velocity, x_inclination, star.mass_msun)
+        heaviest = self.orbit_draws.prior.high
+        needs = f"the orbit needs more than {heaviest:g} Msun at any inclination"
+        walls = [
+            Wall(np.log(velocity.f_msun / heaviest), f"{needs}, whatever the mass of the seen star"),
+            Wall(star.excess, f"{needs}, for any ordinary mass of the seen star"),
+        ]
+        return star, orbit._replace(ln_ratio=orbit.ln_ratio + velocity.ln_ratio), walls
 
     def _predict(
         self, draws: Mapping[str, FloatArray], star: SeenStarState, orbit: CompanionDraw, companion: Companion
@@ -193,32 +226,14 @@ class Branch:
         period_d, e = system.orbit.period_d.value, system.orbit.eccentricity.value
         separation_rsun = kepler.separation_rsun(star.mass_msun + orbit.mass_msun, period_d)
         lobe = roche.roche_lobe_rsun(star.mass_msun, orbit.mass_msun, separation_rsun, e)
-        walls = [
-            Wall(orbit.closed, self._mass_words()),
-            Wall(~star.valid, "no ordinary star has the seen star's spectrum"),
-            Wall(star.radius_rsun > lobe, "the seen star would overflow its Roche lobe"),
-            Wall(
-                prediction.optical_ratio > largest,
-                f"the companion would outshine the seen star more than {largest:g} times in the optical",
-            ),
-        ]
+        walls = [Wall(np.log(star.radius_rsun / lobe), "the seen star would overflow its Roche lobe")]
+        if companion.components:
+            words = f"the companion would outshine the seen star more than {largest:g} times in the optical"
+            walls.append(Wall(np.log(np.maximum(prediction.optical_ratio, 1e-30) / largest), words))
         if companion.radius_rsun is not None:
             lobe = roche.roche_lobe_rsun(orbit.mass_msun, star.mass_msun, separation_rsun, e)
-            walls.append(Wall(companion.radius_rsun > lobe, "the companion would overflow its Roche lobe"))
+            walls.append(Wall(np.log(companion.radius_rsun / lobe), "the companion would overflow its Roche lobe"))
         return walls
-
-    def _mass_words(self) -> str:
-        """Why the mass range is closed."""
-        heaviest = self.mass_prior.high
-        orbit = self.context.system.orbit
-        k1 = orbit.k1_km_s
-        if k1 is None:
-            return "no mass in the range fits the orbit"
-        f_msun = float(kepler.mass_function_msun(orbit.period_d.value, k1.value, orbit.eccentricity.value))
-        reach = "at any inclination"
-        if f_msun >= heaviest:
-            return f"the orbit needs more than {heaviest:g} Msun {reach}, whatever the mass of the seen star"
-        return f"the orbit needs more than {heaviest:g} Msun {reach}"
 
 
 def _brightest(companion: Companion, magnitudes: list[FloatArray], column: int) -> Component | None:
@@ -235,12 +250,13 @@ def _brightest(companion: Companion, magnitudes: list[FloatArray], column: int) 
     return Component("star", pick("teff_k"), pick("logg"), pick("feh"), pick("radius_rsun"))
 
 
-def _derived(star: SeenStarState, orbit: CompanionDraw, companion: Companion) -> dict[str, FloatArray]:
+def _derived(
+    star: SeenStarState, orbit: CompanionDraw, companion: Companion, prediction: Prediction
+) -> dict[str, FloatArray]:
     """Quantities worth reporting that are not parameters."""
     values = {
         "m1_msun": star.mass_msun, "r1_rsun": star.radius_rsun, "teff1_k": star.teff_k, "logg1": star.logg,
-        "m2_msun": orbit.mass_msun, "inclination_deg": np.degrees(np.arccos(orbit.cos_inclination)),
-        "k1_km_s": orbit.k1_km_s,
+        "m2_msun": orbit.mass_msun, "inclination_deg": prediction.inclination_deg, "k1_km_s": prediction.k1_km_s,
     }
     for place, component in enumerate(companion.components):
         suffix = "2" if len(companion.components) == 1 else f"2{'ab'[place]}"

@@ -40,22 +40,16 @@ class Fit:
         """Constant part of the ln likelihood, the same for every scenario of one system."""
         return sum(observation.ln_norm for observation in self.observations)
 
-    @cached_property
-    def constrained(self) -> NDArray[np.bool_]:
-        """(dimension,) True for the scores of published relations."""
-        return np.array([parameter.counts for parameter in self.branch.parameters], dtype=bool)
-
     def sample(self, x: FloatArray) -> Sampled:
         """Return everything the branch says at points ``x`` (n, dimension) in normal coordinates."""
-        from scipy.special import ndtr
-
-        return self.branch.sample(np.asarray(ndtr(x)))
+        return self.branch.sample(x)
 
     def evaluate(self, x: FloatArray) -> Evaluation:
         """Return residuals and prior weights at points ``x`` (n, dimension)."""
         sampled = self.sample(x)
         columns = [observation.residuals(sampled.prediction) for observation in self.observations]
-        return Evaluation(np.concatenate(columns, axis=1), sampled.ln_ratio)
+        excess = np.max([wall.excess for wall in sampled.walls], axis=0)
+        return Evaluation(np.concatenate(columns, axis=1), sampled.nuisances, sampled.ln_ratio, excess)
 
     def columns_of(self, x: FloatArray) -> dict[str, slice]:
         """Return which residual columns belong to which observation; ``x`` (1, dimension) is any point."""
@@ -73,7 +67,7 @@ class Fit:
         undecided = np.ones(x.shape[0], dtype=bool)
         # The first wall a point meets is the reason; later ones may only follow from it.
         for wall in self.sample(x).walls:
-            counts[wall.words] += int(np.count_nonzero(wall.closed & undecided))
-            undecided &= ~wall.closed
+            counts[wall.words] += int(np.count_nonzero((wall.excess > 0.0) & undecided))
+            undecided &= wall.excess <= 0.0
         words, _ = counts.most_common(1)[0]
         return words

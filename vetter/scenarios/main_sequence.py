@@ -44,5 +44,5 @@ class MainSequenceCompanion(Scenario):
             mass_msun, draws["life_fraction2"], feh, draws["luminosity_score2"], draws["radius_score2"]
         )
         light = Component("star", star.teff_k, star.logg, feh, star.radius_rsun)
-        walls = (Wall(~star.valid, "no main-sequence star has that mass"),)
+        walls = (Wall(np.where(star.valid, -1.0, 1.0), "no main-sequence star has that mass"),)
         return Companion((light,), star.radius_rsun, walls)

@@ -15,11 +15,22 @@ from numpy.typing import NDArray
 FloatArray = NDArray[np.float64]
 
 
+SMALLEST_UNIT = 1e-15
+"""Uniform deviates are kept this far from 0 and 1, where their rounding begins to show."""
+
+
+def to_unit(x: FloatArray) -> FloatArray:
+    """Return uniform deviates (n,) in (0, 1) from standard normal ones."""
+    from scipy.special import ndtr
+
+    return np.clip(ndtr(x), SMALLEST_UNIT, 1.0 - SMALLEST_UNIT)
+
+
 class Prior(Protocol):
     """A one-dimensional density that can be drawn from and printed."""
 
-    def from_unit(self, unit: FloatArray) -> FloatArray:
-        """Return values from uniform deviates in (0, 1)."""
+    def from_normal(self, x: FloatArray) -> FloatArray:
+        """Return values from standard normal deviates."""
         ...
 
     def ln_density(self, value: FloatArray) -> FloatArray:
@@ -38,9 +49,9 @@ class Uniform:
     low: float
     high: float
 
-    def from_unit(self, unit: FloatArray) -> FloatArray:
-        """Return values from uniform deviates in (0, 1)."""
-        return self.low + unit * (self.high - self.low)
+    def from_normal(self, x: FloatArray) -> FloatArray:
+        """Return values from standard normal deviates."""
+        return self.low + to_unit(x) * (self.high - self.low)
 
     def ln_density(self, value: FloatArray) -> FloatArray:
         """Return ln density at ``value``; -inf outside the range."""
@@ -59,9 +70,9 @@ class LogUniform:
     low: float
     high: float
 
-    def from_unit(self, unit: FloatArray) -> FloatArray:
-        """Return values from uniform deviates in (0, 1)."""
-        return np.asarray(self.low * (self.high / self.low) ** unit)
+    def from_normal(self, x: FloatArray) -> FloatArray:
+        """Return values from standard normal deviates."""
+        return np.asarray(self.low * (self.high / self.low) ** to_unit(x))
 
     def ln_density(self, value: FloatArray) -> FloatArray:
         """Return ln density (per unit of the value itself) at ``value``; -inf outside the range."""
@@ -81,11 +92,9 @@ class Normal:
     mean: float
     sigma: float
 
-    def from_unit(self, unit: FloatArray) -> FloatArray:
-        """Return values from uniform deviates in (0, 1)."""
-        from scipy.special import ndtri
-
-        return np.asarray(self.mean + self.sigma * ndtri(unit))
+    def from_normal(self, x: FloatArray) -> FloatArray:
+        """Return values from standard normal deviates: directly, so that no tail is cut."""
+        return self.mean + self.sigma * x
 
     def ln_density(self, value: FloatArray) -> FloatArray:
         """Return ln density at ``value``."""
@@ -103,11 +112,11 @@ class SpaceDensity:
 
     scale_pc: float = 1350.0
 
-    def from_unit(self, unit: FloatArray) -> FloatArray:
-        """Return distances (pc) from uniform deviates in (0, 1)."""
+    def from_normal(self, x: FloatArray) -> FloatArray:
+        """Return distances (pc) from standard normal deviates."""
         from scipy.special import gammaincinv
 
-        return np.asarray(self.scale_pc * gammaincinv(3.0, unit))
+        return np.asarray(self.scale_pc * gammaincinv(3.0, to_unit(x)))
 
     def ln_density(self, value: FloatArray) -> FloatArray:
         """Return ln density per pc at distance ``value`` (pc)."""
@@ -134,14 +143,14 @@ class Guide:
     low: float = -np.inf
     high: float = np.inf
 
-    def from_unit(self, unit: FloatArray) -> FloatArray:
-        """Return values from uniform deviates in (0, 1)."""
-        return self.from_unit_within(unit, np.asarray(self.low), np.asarray(self.high))
+    def from_normal(self, x: FloatArray) -> FloatArray:
+        """Return values from standard normal deviates."""
+        return self.from_normal_within(x, np.asarray(self.low), np.asarray(self.high))
 
-    def from_unit_within(self, unit: FloatArray, low: FloatArray, high: FloatArray) -> FloatArray:
+    def from_normal_within(self, x: FloatArray, low: FloatArray, high: FloatArray) -> FloatArray:
         """Return values within per-sample bounds ``low`` < ``high`` (n,)."""
         first, last = self._below(low), self._below(high)
-        fraction = np.clip(first + unit * (last - first), 1e-15, 1.0 - 1e-15)
+        fraction = np.clip(first + to_unit(x) * (last - first), SMALLEST_UNIT, 1.0 - SMALLEST_UNIT)
         score = (2.0 * fraction - 1.0) / np.sqrt(2.0 * fraction * (1.0 - fraction))
         return np.clip(self.centre + self.scale * score, low, high)
 
@@ -180,11 +189,11 @@ class Parameter:
     guide: Guide | None = None
     counts: bool = False
 
-    def draw(self, unit: FloatArray) -> tuple[FloatArray, FloatArray]:
-        """Return values and ln(prior / guide), both (n,), from uniform deviates (n,)."""
+    def draw(self, x: FloatArray) -> tuple[FloatArray, FloatArray]:
+        """Return values and ln(prior / guide), both (n,), from standard normal deviates (n,)."""
         if self.guide is None:
-            return self.prior.from_unit(unit), np.zeros(unit.shape)
-        value = self.guide.from_unit(unit)
+            return self.prior.from_normal(x), np.zeros(x.shape)
+        value = self.guide.from_normal(x)
         return value, self.prior.ln_density(value) - self.guide.ln_density(value)
 
 

@@ -8,15 +8,15 @@ not decide, each kind that fits is run as a branch of its own and the evidences 
 from __future__ import annotations
 
 from abc import ABC, abstractmethod
-from collections.abc import Mapping
+from collections.abc import MutableMapping
 from typing import ClassVar, NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
 
 from vetter.scenarios.context import optional_guide
-from vetter.scenarios.priors import LogUniform, Parameter, Uniform, score
-from vetter.stars import empirical_mass
+from vetter.scenarios.priors import LogUniform, Parameter, Uniform, score, to_unit
+from vetter.stars.empirical_mass import TORRES_MASS_SCATTER_DEX, torres_mass_msun
 from vetter.stars.main_sequence import main_sequence
 from vetter.stars.properties import radius_from_gravity_rsun
 from vetter.system.model import Primary, System
@@ -33,23 +33,37 @@ GIANT_LOGG = 3.0
 GIANT_MASS_RANGE_MSUN = (0.7, 16.0)
 """A narrower range would exclude true bright giants."""
 
+DWARF_MASS_RANGE_MSUN = (0.3, 150.0)
+"""Outside this the relation, stretched by its scatter, says nothing."""
+
+COOL_DWARF_MASS_RANGE_MSUN = (0.08, 0.8)
+
 COOL_DWARF_MASS_MSUN = 0.6
 """Below this the relation of Torres et al. 2010 does not reach."""
 
 
 class SeenStarState(NamedTuple):
-    """The seen star of each sample, all (n,); ``valid`` False where the relation has no star."""
+    """The seen star of each sample, all (n,).
+
+    ``ln_ratio`` is ln(prior / density it was drawn from) of its mass; ``excess`` is above zero where there is no such
+    star, and grows with the distance from one.
+    """
 
     teff_k: FloatArray
     logg: FloatArray
     feh: FloatArray
     radius_rsun: FloatArray
     mass_msun: FloatArray
-    valid: NDArray[np.bool_]
+    ln_ratio: FloatArray
+    excess: FloatArray
 
 
 class SeenStar(ABC):
-    """A way from sampled parameters to the seen star."""
+    """A way from sampled parameters to the seen star.
+
+    The last of its parameters decides the mass, and is drawn only below the mass at which the orbit would need more
+    than the scenario's heaviest companion: a posterior that leans on that wall could not be sampled.
+    """
 
     name: ClassVar[str]
     words: ClassVar[str]
@@ -57,11 +71,18 @@ class SeenStar(ABC):
 
     @abstractmethod
     def parameters(self, seen: Primary) -> list[Parameter]:
-        """Return the parameters to draw, guided by what was measured."""
+        """Return the parameters to draw freely, guided by what was measured."""
+
+    @property
+    @abstractmethod
+    def mass_parameter(self) -> Parameter:
+        """The parameter that decides the mass, drawn below ``mass_max_msun``."""
 
     @abstractmethod
-    def star(self, draws: Mapping[str, FloatArray]) -> SeenStarState:
-        """Return the star of each sample from the drawn parameters."""
+    def star(
+        self, draws: MutableMapping[str, FloatArray], x_mass: FloatArray, mass_max_msun: FloatArray
+    ) -> SeenStarState:
+        """Return the star of each sample; the mass parameter is added to ``draws``."""
 
 
 class Dwarf(SeenStar):
@@ -71,16 +92,28 @@ class Dwarf(SeenStar):
     words = "a dwarf or subgiant with the mass of the Torres et al. (2010) relation"
 
     def parameters(self, seen: Primary) -> list[Parameter]:
-        """Return Teff, log g, [Fe/H] and the score of the mass relation."""
-        return [*spectrum_parameters(seen), score("mass_score")]
+        """Return Teff, log g and [Fe/H]."""
+        return spectrum_parameters(seen)
 
-    def star(self, draws: Mapping[str, FloatArray]) -> SeenStarState:
+    @property
+    def mass_parameter(self) -> Parameter:
+        """The score of the mass relation."""
+        return score("mass_score")
+
+    def star(
+        self, draws: MutableMapping[str, FloatArray], x_mass: FloatArray, mass_max_msun: FloatArray
+    ) -> SeenStarState:
         """Return the star; its radius follows from mass and log g, which removes the mass-radius ridge."""
+        from scipy.special import log_ndtr, ndtri_exp
+
         teff, logg, feh = draws["teff_k"], draws["logg"], draws["feh"]
-        mass = empirical_mass.torres_mass_msun(teff, logg, feh)
-        mass = mass * 10.0 ** (empirical_mass.TORRES_MASS_SCATTER_DEX * draws["mass_score"])
-        valid = (mass > 0.3) & (mass < 150.0)
-        return SeenStarState(teff, logg, feh, radius_from_gravity_rsun(mass, logg), mass, valid)
+        mean = torres_mass_msun(teff, logg, feh)
+        highest = np.log10(np.maximum(mass_max_msun, 1e-3) / mean) / TORRES_MASS_SCATTER_DEX
+        ln_share = log_ndtr(highest)
+        draws["mass_score"] = ndtri_exp(log_ndtr(x_mass) + ln_share)
+        mass = mean * 10.0 ** (TORRES_MASS_SCATTER_DEX * draws["mass_score"])
+        excess = np.log(np.maximum(DWARF_MASS_RANGE_MSUN[0] / mass, mass / DWARF_MASS_RANGE_MSUN[1]))
+        return SeenStarState(teff, logg, feh, radius_from_gravity_rsun(mass, logg), mass, ln_share, excess)
 
 
 class Giant(SeenStar):
@@ -90,14 +123,24 @@ class Giant(SeenStar):
     words = f"a giant of {GIANT_MASS_RANGE_MSUN[0]:g}-{GIANT_MASS_RANGE_MSUN[1]:g} Msun (log-uniform)"
 
     def parameters(self, seen: Primary) -> list[Parameter]:
-        """Return Teff, log g, [Fe/H] and the mass."""
-        return [*spectrum_parameters(seen), Parameter("mass_msun", "Msun", LogUniform(*GIANT_MASS_RANGE_MSUN))]
+        """Return Teff, log g and [Fe/H]."""
+        return spectrum_parameters(seen)
 
-    def star(self, draws: Mapping[str, FloatArray]) -> SeenStarState:
+    @property
+    def mass_parameter(self) -> Parameter:
+        """The mass itself."""
+        return Parameter("mass_msun", "Msun", LogUniform(*GIANT_MASS_RANGE_MSUN))
+
+    def star(
+        self, draws: MutableMapping[str, FloatArray], x_mass: FloatArray, mass_max_msun: FloatArray
+    ) -> SeenStarState:
         """Return the star."""
-        teff, logg, mass = draws["teff_k"], draws["logg"], draws["mass_msun"]
-        radius = radius_from_gravity_rsun(mass, logg)
-        return SeenStarState(teff, logg, draws["feh"], radius, mass, np.ones(mass.shape, dtype=bool))
+        teff, logg = draws["teff_k"], draws["logg"]
+        mass, ln_share, excess = log_uniform_below(x_mass, *GIANT_MASS_RANGE_MSUN, mass_max_msun)
+        draws["mass_msun"] = mass
+        return SeenStarState(
+            teff, logg, draws["feh"], radius_from_gravity_rsun(mass, logg), mass, ln_share, excess
+        )
 
 
 class CoolDwarf(SeenStar):
@@ -107,18 +150,34 @@ class CoolDwarf(SeenStar):
     words = "a dwarf on the main-sequence relation"
 
     def parameters(self, seen: Primary) -> list[Parameter]:
-        """Return mass, [Fe/H] and the scores of the relation."""
+        """Return [Fe/H] and the scores of the relation."""
         feh = Parameter("feh", "dex", Uniform(*FEH_RANGE), optional_guide(seen.feh, *FEH_RANGE))
-        mass = Parameter("mass_msun", "Msun", LogUniform(0.08, 0.8))
-        return [mass, feh, score("luminosity_score"), score("radius_score")]
+        return [feh, score("luminosity_score"), score("radius_score")]
 
-    def star(self, draws: Mapping[str, FloatArray]) -> SeenStarState:
+    @property
+    def mass_parameter(self) -> Parameter:
+        """The mass itself."""
+        return Parameter("mass_msun", "Msun", LogUniform(*COOL_DWARF_MASS_RANGE_MSUN))
+
+    def star(
+        self, draws: MutableMapping[str, FloatArray], x_mass: FloatArray, mass_max_msun: FloatArray
+    ) -> SeenStarState:
         """Return the star, half way through its life: such a star hardly changes."""
-        mass, feh = draws["mass_msun"], draws["feh"]
-        star = main_sequence(
-            mass, np.full(mass.shape, 0.5), feh, draws["luminosity_score"], draws["radius_score"]
-        )
-        return SeenStarState(star.teff_k, star.logg, feh, star.radius_rsun, star.mass_msun, star.valid)
+        mass, ln_share, excess = log_uniform_below(x_mass, *COOL_DWARF_MASS_RANGE_MSUN, mass_max_msun)
+        draws["mass_msun"] = mass
+        feh = draws["feh"]
+        star = main_sequence(mass, 0.5, feh, draws["luminosity_score"], draws["radius_score"])
+        excess = np.where(star.valid, excess, np.maximum(excess, 1.0))
+        return SeenStarState(star.teff_k, star.logg, feh, star.radius_rsun, mass, ln_share, excess)
+
+
+def log_uniform_below(
+    x: FloatArray, low: float, high: float, limit: FloatArray
+) -> tuple[FloatArray, FloatArray, FloatArray]:
+    """Return log-uniform values (n,) between low and min(high, limit), ln of the share of the prior, and the excess."""
+    top = np.clip(limit, low * (1.0 + 1e-6), high)
+    value = low * (top / low) ** to_unit(x)
+    return value, np.log(np.log(top / low) / np.log(high / low)), np.log(low / np.maximum(limit, 1e-6))
 
 
 def spectrum_parameters(seen: Primary) -> list[Parameter]:
@@ -157,7 +216,7 @@ def _torres_mass_range_msun(seen: Primary) -> tuple[float, float]:
     logg = 4.5 if seen.logg is None else max(seen.logg.value, GIANT_LOGG)
     feh = 0.0 if seen.feh is None else seen.feh.value
     mass = float(
-        empirical_mass.torres_mass_msun(np.array([seen.teff_k.value]), np.array([logg]), np.array([feh]))[0]
+        torres_mass_msun(np.array([seen.teff_k.value]), np.array([logg]), np.array([feh]))[0]
     )
-    factor = 10.0 ** (2.0 * empirical_mass.TORRES_MASS_SCATTER_DEX)
+    factor = 10.0 ** (2.0 * TORRES_MASS_SCATTER_DEX)
     return mass / factor, mass * factor

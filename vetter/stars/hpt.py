@@ -52,7 +52,7 @@ class _Mass(NamedTuple):
 
 def zero_age(mass_msun: ArrayLike, z: ArrayLike) -> tuple[FloatArray, FloatArray]:
     """Return zero-age luminosity and radius (solar); Tout et al. 1996, eqs. 1 and 2."""
-    return _zero_age(_Mass.of(mass_msun), at_metal_fraction(np.asarray(z, dtype=float)))
+    return _zero_age(_Mass.of(mass_msun), at_metal_fraction(z))
 
 
 def lifetime_myr(mass_msun: ArrayLike, z: ArrayLike) -> FloatArray:
@@ -60,12 +60,12 @@ def lifetime_myr(mass_msun: ArrayLike, z: ArrayLike) -> FloatArray:
 
     The share of the time to the giant branch (eq. 6) follows the authors' code; see :func:`share_of_giant_branch_time`.
     """
-    return _times_myr(_Mass.of(mass_msun), at_metal_fraction(np.asarray(z, dtype=float)))[1]
+    return _times_myr(_Mass.of(mass_msun), at_metal_fraction(z))[1]
 
 
 def main_sequence(mass_msun: ArrayLike, z: ArrayLike, life_fraction: ArrayLike) -> Evolution:
     """Return L, R and lifetime at ``life_fraction`` (0-1) of the main-sequence life (eqs. 8-24)."""
-    mass, metals = _Mass.of(mass_msun), at_metal_fraction(np.asarray(z, dtype=float))
+    mass, metals = _Mass.of(mass_msun), at_metal_fraction(z)
     tau = np.asarray(life_fraction, dtype=float)
     hook, lifetime = _times_myr(mass, metals)
     luminosity_0, radius_0 = _zero_age(mass, metals)

@@ -1,7 +1,7 @@
 """Coefficients of the stellar formulas of Tout et al. 1996 and Hurley, Pols & Tout 2000 at any metallicity.
 
 Each published coefficient is a polynomial in zeta = log10(Z / 0.02), some with floors and ceilings. All polynomials
-are evaluated at once as one matrix product. Sources: Tout, Pols, Eggleton & Han 1996, MNRAS 281, 257, tables 1 and 2;
+are evaluated at once as a matrix product. Sources: Tout, Pols, Eggleton & Han 1996, MNRAS 281, 257, tables 1 and 2;
 Hurley, Pols & Tout 2000, MNRAS 315, 543, appendix. The numbers are in ``hpt_coefficients.json`` of ``vetter.grids``.
 """
 
@@ -15,6 +15,7 @@ from importlib.resources import files
 from typing import Any
 
 import numpy as np
+from numpy.polynomial.polynomial import polyval
 from numpy.typing import ArrayLike, NDArray
 
 FloatArray = NDArray[np.float64]
@@ -26,41 +27,26 @@ Z_RANGE = (1e-4, 0.03)
 """Metal fractions of the underlying models; outside, the nearer end is used."""
 
 _N_POWERS = 6
+_N_A = 82
 _BLOCK = 512
 
 
 @dataclass(frozen=True, eq=False)
-class PolynomialSet:
-    """Named polynomials in zeta: row k of ``table`` (n, 6) holds the coefficients of the k-th name, lowest first."""
-
-    names: tuple[str, ...]
-    table: FloatArray
-
-    def at(self, zeta: FloatArray) -> dict[str, FloatArray]:
-        """Return every polynomial at ``zeta`` (any shape); each value has that shape."""
-        powers = np.empty((_N_POWERS, zeta.size))
-        powers[0] = 1.0
-        for k in range(1, _N_POWERS):
-            np.multiply(powers[k - 1], zeta.reshape(-1), out=powers[k])
-        values = np.empty((len(self.names), zeta.size))
-        # Blocks keep the product below the size at which linear-algebra libraries start threads, which costs more
-        # than it gains here, and much more on a busy machine.
-        for start in range(0, zeta.size, _BLOCK):
-            np.matmul(self.table, powers[:, start : start + _BLOCK], out=values[:, start : start + _BLOCK])
-        return dict(zip(self.names, values.reshape(len(self.names), *zeta.shape), strict=True))
-
-
-@dataclass(frozen=True, eq=False)
 class Metallicity:
-    """Everything that depends on the metal fraction alone, with the shape of the metal fractions.
+    """Everything that depends on the metal fraction alone.
 
-    ``zero_age`` holds the letters of Tout et al. 1996 as "L.alpha", "R.theta"; ``a`` the numbers of Hurley et al. 2000.
+    Attributes
+    ----------
+    z, zeta : metal fraction and log10(Z / 0.02), any shape
+    zero_age : the letters of Tout et al. 1996 as "L.alpha", "R.theta", each of that shape
+    a : (82, shape of z), the numbers of Hurley, Pols & Tout 2000; row k is a_k. One block and not 82 arrays: memory
+        taken and given back in many small pieces costs more time than the arithmetic (measured: 4 against 0.2 ms).
     """
 
     z: FloatArray
     zeta: FloatArray
     zero_age: Mapping[str, FloatArray]
-    a: Mapping[int, FloatArray]
+    a: FloatArray
 
 
 @cache
@@ -75,33 +61,60 @@ def metal_fraction(feh: ArrayLike) -> FloatArray:
 
 
 @cache
-def _polynomials(group: str) -> PolynomialSet:
-    """Stack the published polynomials of one group, "zero_age" or "a", padded with zeros to one length."""
-    record = published()
-    if group == "a":
-        rows: dict[str, list[float]] = record["hpt_a"]
-    else:
-        rows = {f"{kind}.{letter}": row for kind in "LR" for letter, row in record["tout1996"][kind].items()}
-    table = np.array([[*row, *[0.0] * (_N_POWERS - len(row))] for row in rows.values()])
+def _zero_age_table() -> tuple[tuple[str, ...], FloatArray]:
+    """Return the letters of Tout et al. 1996 and their polynomials, (16, 6), lowest power first."""
+    rows = {f"{kind}.{letter}": row for kind in "LR" for letter, row in published()["tout1996"][kind].items()}
+    return tuple(rows), np.array([_padded(row) for row in rows.values()])
+
+
+@cache
+def _a_table() -> FloatArray:
+    """Return the polynomials of a_0 to a_81, (82, 6); primed ones stand in for their unprimed, zeros for the rest."""
+    table = np.zeros((_N_A, _N_POWERS))
+    for name, row in published()["hpt_a"].items():
+        number = name.rstrip("'")[1:]
+        if number.isdigit():
+            table[int(number)] = _padded(row)
     table.setflags(write=False)
-    return PolynomialSet(tuple(rows), table)
+    return table
 
 
-def at_metal_fraction(z: FloatArray) -> Metallicity:
-    """Return all coefficients of the main sequence at metal fractions ``z`` inside ``Z_RANGE``."""
-    zeta = np.log10(z / Z_SUN)
-    raw = _polynomials("a").at(zeta)
-    a = {int(name[1:]): value for name, value in raw.items() if name[1:].isdigit()}
-    a[11], a[12] = raw["a11'"] * a[14], raw["a12'"] * a[14]
-    a[18], a[19] = raw["a18'"] * a[20], raw["a19'"] * a[20]
-    a[29] = raw["a29'"] ** a[32]
-    _add_luminosity_limits(a, z, zeta)
-    _add_radius_limits(a, z, zeta)
-    _add_gamma_limits(a, raw, zeta)
-    return Metallicity(z, zeta, _polynomials("zero_age").at(zeta), a)
+def _padded(row: list[float]) -> list[float]:
+    return [*row, *[0.0] * (_N_POWERS - len(row))]
 
 
-def _add_luminosity_limits(a: dict[int, FloatArray], z: FloatArray, zeta: FloatArray) -> None:
+def _polynomials(table: FloatArray, zeta: FloatArray) -> FloatArray:
+    """Return every polynomial of ``table`` (n, 6) at ``zeta``: (n, shape of zeta)."""
+    powers = np.empty((_N_POWERS, zeta.size))
+    powers[0] = 1.0
+    for k in range(1, _N_POWERS):
+        np.multiply(powers[k - 1], zeta.reshape(-1), out=powers[k])
+    values = np.empty((len(table), zeta.size))
+    # Blocks keep the product below the size at which linear-algebra libraries start threads, which costs more than
+    # it gains here, and much more on a busy machine.
+    for start in range(0, zeta.size, _BLOCK):
+        np.matmul(table, powers[:, start : start + _BLOCK], out=values[:, start : start + _BLOCK])
+    return values.reshape(len(table), *zeta.shape)
+
+
+def at_metal_fraction(z: ArrayLike) -> Metallicity:
+    """Return all coefficients of the main sequence at metal fractions ``z`` inside ``Z_RANGE``, any shape."""
+    metals = np.asarray(z, dtype=float)
+    zeta = np.asarray(np.log10(metals / Z_SUN))
+    a = _polynomials(_a_table(), zeta)
+    a[11] *= a[14]
+    a[12] *= a[14]
+    a[18] *= a[20]
+    a[19] *= a[20]
+    a[29] = a[29] ** a[32]
+    _add_luminosity_limits(a, metals, zeta)
+    _add_radius_limits(a, metals, zeta)
+    _add_gamma_limits(a, zeta)
+    letters, table = _zero_age_table()
+    return Metallicity(metals, zeta, dict(zip(letters, _polynomials(table, zeta), strict=True)), a)
+
+
+def _add_luminosity_limits(a: FloatArray, z: FloatArray, zeta: FloatArray) -> None:
     """Add the coefficients with floors and ceilings of eqs. 16 and 18-20, and a17 of eq. 9."""
     rich = z > 0.01
     sigma = np.log10(z)
@@ -119,7 +132,7 @@ def _add_luminosity_limits(a: dict[int, FloatArray], z: FloatArray, zeta: FloatA
     a[57] = a[33]
 
 
-def _add_radius_limits(a: dict[int, FloatArray], z: FloatArray, zeta: FloatArray) -> None:
+def _add_radius_limits(a: FloatArray, z: FloatArray, zeta: FloatArray) -> None:
     """Add the coefficients with floors and ceilings of eqs. 17, 21 and 22."""
     a[42] = np.minimum(1.25, np.maximum(1.1, 1.9848 + 1.1386 * zeta + 0.3564 * zeta**2))
     a[43] = 0.063 + 0.0481 * zeta + 0.00984 * zeta**2
@@ -139,13 +152,14 @@ def _add_radius_limits(a: dict[int, FloatArray], z: FloatArray, zeta: FloatArray
     a[74] = np.maximum(1.4, np.minimum(1.6, 1.6 + 0.764 * zeta + 0.3322 * zeta**2))
 
 
-def _add_gamma_limits(a: dict[int, FloatArray], raw: Mapping[str, FloatArray], zeta: FloatArray) -> None:
+def _add_gamma_limits(a: FloatArray, zeta: FloatArray) -> None:
     """Add the coefficients of eq. 23."""
+    raw = published()["hpt_a"]
     a[75] = np.maximum(1.0, np.minimum(1.27, 0.8109 - 0.6282 * zeta))
     a[75] = np.maximum(a[75], 0.6355 - 0.4192 * zeta)
-    a[76] = np.maximum(raw["a76_poly"], raw["a76_floor"])
-    a[77] = np.maximum(np.minimum(0.0, raw["a77_poly"]), raw["a77_floor"])
-    a[78] = np.maximum(0.0, np.minimum(raw["a78_poly"], 7.454 + 9.046 * zeta))
-    a[79] = np.minimum(raw["a79_poly"], np.maximum(2.0, -13.3 - 18.6 * zeta))
+    a[76] = np.maximum(polyval(zeta, raw["a76_poly"]), polyval(zeta, raw["a76_floor"]))
+    a[77] = np.maximum(np.minimum(0.0, polyval(zeta, raw["a77_poly"])), polyval(zeta, raw["a77_floor"]))
+    a[78] = np.maximum(0.0, np.minimum(polyval(zeta, raw["a78_poly"]), 7.454 + 9.046 * zeta))
+    a[79] = np.minimum(polyval(zeta, raw["a79_poly"]), np.maximum(2.0, -13.3 - 18.6 * zeta))
     a[80] = np.maximum(0.0585542, -0.2711 - 0.5756 * zeta - 0.0838 * zeta**2)
     a[81] = np.minimum(1.5, np.maximum(0.4, 2.493 + 1.1475 * zeta))

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable
 
 from vetter.errors import Fault, InputError
+from vetter.stars import helium as stripped
 from vetter.stars import main_sequence as ordinary
 from vetter.stars import white_dwarf as degenerate
 from vetter.stars.properties import StarProperties
@@ -30,7 +31,7 @@ def star_report(
     ----------
     kind : a name in ``KINDS``
     mass_msun : solar masses; the range depends on the kind
-    life_fraction : 0-1, share of its life on the main sequence that the star has lived
+    life_fraction : 0-1, share of its hydrogen-burning (helium star: helium-burning) life that the star has lived
     feh : [Fe/H], dex
     white_dwarf_teff_k : used for a white dwarf only, whose ``lifetime_myr`` is None
 
@@ -39,6 +40,26 @@ def star_report(
     if kind not in KINDS:
         raise InputError.single(SOURCE, "kind", kind, "one of " + ", ".join(KINDS), "Choose one of these.")
     return KINDS[kind](mass_msun, life_fraction, feh, white_dwarf_teff_k)
+
+
+def render_star(report: StarReport) -> str:
+    """Return a report of :func:`star_report` as lines for the screen, one quantity with its unit on each."""
+    lines = []
+    for key, (words, unit, digits) in _WORDS.items():
+        value = report[key]
+        shown = "-" if value is None else f"{value:.{digits}g} {unit}".rstrip()
+        lines.append(f"{words:<12}{shown}")
+    return "\n".join(lines)
+
+
+_WORDS = {
+    "mass_msun": ("mass", "Msun", 5),
+    "teff_k": ("Teff", "K", 5),
+    "radius_rsun": ("radius", "Rsun", 4),
+    "luminosity_lsun": ("luminosity", "Lsun", 4),
+    "logg": ("log g", "", 4),
+    "lifetime_myr": ("lifetime", "Myr", 5),
+}
 
 
 def _main_sequence(mass_msun: float, life_fraction: float, feh: float, _teff_k: float) -> StarReport:
@@ -51,6 +72,15 @@ def _main_sequence(mass_msun: float, life_fraction: float, feh: float, _teff_k: 
     return _columns(star, float(ordinary.lifetime_myr(mass_msun, feh)))
 
 
+def _helium(mass_msun: float, life_fraction: float, _feh: float, _teff_k: float) -> StarReport:
+    _check(
+        ("--mass", mass_msun, stripped.MASS_RANGE_MSUN, "solar masses"),
+        ("--life-fraction", life_fraction, (0.0, 1.0), "(0 is the start of helium burning, 1 its end)"),
+    )
+    star = stripped.helium_star(mass_msun, life_fraction)
+    return _columns(star, float(stripped.pure_helium(mass_msun, life_fraction).lifetime_myr))
+
+
 def _white_dwarf(mass_msun: float, _life_fraction: float, _feh: float, teff_k: float) -> StarReport:
     _check(
         ("--mass", mass_msun, degenerate.MASS_RANGE_MSUN, "solar masses"),
@@ -61,6 +91,7 @@ def _white_dwarf(mass_msun: float, _life_fraction: float, _feh: float, teff_k: f
 
 KINDS: dict[str, Callable[[float, float, float, float], StarReport]] = {
     "main_sequence": _main_sequence,
+    "helium": _helium,
     "white_dwarf": _white_dwarf,
 }
 """Kinds of star that can be reported."""

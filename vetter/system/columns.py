@@ -11,7 +11,7 @@ from dataclasses import dataclass
 from pathlib import Path
 
 from vetter.errors import Fault, InputError
-from vetter.system.faults import FaultLog
+from vetter.system.faults import MOST_SHOWN_OF_DATA_FILE, FaultLog
 from vetter.system.kinds import Kind, Number
 from vetter.system.text_files import read_text
 
@@ -45,7 +45,7 @@ def read_columns(path: Path, columns: Sequence[Column]) -> list[dict[str, object
     """
     text = read_text(path)
     cells = _ecsv_cells(path, text) if text.startswith(_ECSV_MARK) else _csv_cells(path, text)
-    log = FaultLog(str(path))
+    log = FaultLog(str(path), MOST_SHOWN_OF_DATA_FILE)
     places = _find_columns(cells, columns, log)
     _check_units(cells, columns, log)
     if not cells.rows:
@@ -122,7 +122,7 @@ def _csv_cells(path: Path, text: str) -> _Cells:
         fault = Fault("", "", f"comma-separated values ({error})", "Check quotes and commas.")
         raise InputError(str(path), [fault]) from None
     names = tuple(name.strip() for name in rows[0]) if rows else ()
-    log = FaultLog(str(path))
+    log = FaultLog(str(path), MOST_SHOWN_OF_DATA_FILE)
     for number, row in enumerate(rows[1:], start=1):
         if len(row) != len(names):
             expected = f"{len(names)} cells, as the header has"

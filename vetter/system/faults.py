@@ -13,6 +13,9 @@ LONGEST_SHOWN: Final = 60
 MOST_SHOWN: Final = 40
 """More faults than this in one source are counted, not listed."""
 
+MOST_SHOWN_OF_DATA_FILE: Final = 20
+"""The same for a file that a system file names: the two lists end in one message."""
+
 
 def show(value: object) -> str:
     """Return a value as short text in the way TOML would write it; never fails, whatever the value.
@@ -52,11 +55,13 @@ class FaultLog:
     Attributes
     ----------
     source : the file that is being read, as the user named it
+    most : how many faults are listed; further ones are counted
     """
 
-    def __init__(self, source: str) -> None:
+    def __init__(self, source: str, most: int = MOST_SHOWN) -> None:
         """Start an empty log for this source."""
         self.source = source
+        self.most = most
         self._faults: list[Fault] = []
 
     def __len__(self) -> int:
@@ -78,16 +83,15 @@ class FaultLog:
     @property
     def is_full(self) -> bool:
         """Return whether further faults will only be counted, so that advice on them would be wasted work."""
-        return len(self._faults) >= MOST_SHOWN
+        return len(self._faults) >= self.most
 
     def raise_if_any(self) -> None:
         """Raise one :class:`~vetter.errors.InputError` with everything found, or return when there is nothing."""
         if not self._faults:
             return
-        shown = self._faults[:MOST_SHOWN]
+        shown = self._faults[: self.most]
         hidden = len(self._faults) - len(shown)
         if hidden:
-            shown.append(
-                Fault("", "", f"no faults, but there are {hidden} more", "Mend those above and read it again.")
-            )
+            mend = "Mend those above and read it again."
+            shown.append(Fault("", "", f"no faults, but there are {hidden} more", mend))
         raise InputError(self.source, shown)

@@ -12,7 +12,7 @@ from pathlib import Path
 from typing import Any, Final
 
 from vetter.errors import Fault, InputError
-from vetter.system.faults import FaultLog
+from vetter.system.faults import MOST_SHOWN_OF_DATA_FILE, FaultLog
 from vetter.system.kinds import Number, as_number
 from vetter.system.text_files import read_bytes, read_text
 
@@ -37,7 +37,7 @@ def read_passband(path: Path) -> tuple[tuple[float, ...], tuple[float, ...]]:
         900-300000 angstrom or not strictly rising, negative throughput, or no light passed at all
     """
     points = _fits_points(path) if read_bytes(path).startswith(b"SIMPLE  =") else _text_points(path)
-    log = FaultLog(str(path))
+    log = FaultLog(str(path), MOST_SHOWN_OF_DATA_FILE)
     for number, (wavelength, throughput) in enumerate(points, start=1):
         if not _ANGSTROM.holds(wavelength):
             log.add(f"row {number}, wavelength", wavelength, _ANGSTROM.expected, "Give wavelengths in angstrom.")
@@ -61,7 +61,7 @@ def _text_points(path: Path) -> Points:
     rows = [cells for cells in lines if cells and not cells[0].startswith("#")]
     if rows and all(_number(cell) is None for cell in rows[0]):
         rows = rows[1:]
-    log = FaultLog(str(path))
+    log = FaultLog(str(path), MOST_SHOWN_OF_DATA_FILE)
     points: Points = []
     for number, cells in enumerate(rows, start=1):
         values = [value for value in map(_number, cells) if value is not None]
