@@ -7,11 +7,15 @@ import shutil
 import sys
 from collections.abc import Callable
 from pathlib import Path
-from typing import Any, TypeVar
+from typing import TYPE_CHECKING, Any, TypeVar
 
 import click
 
 from vetter.errors import InputError
+
+if TYPE_CHECKING:
+    from vetter.results.verdicts import Verdicts
+    from vetter.system.model import System
 
 F = TypeVar("F", bound=Callable[..., Any])
 
@@ -21,7 +25,7 @@ INTERRUPTED = 130
 class Commands(click.Group):
     """A group whose commands turn bad input into one message and exit code 2."""
 
-    def invoke(self, ctx: click.Context) -> Any:
+    def invoke(self, ctx: click.Context) -> object:
         """Run the command; InputError is exit code 2, an interruption 130."""
         try:
             return super().invoke(ctx)
@@ -46,10 +50,10 @@ def system_argument(command: F) -> F:
 
 def json_option(command: F) -> F:
     """Add --json."""
-    return click.option("--json", "as_json", is_flag=True, help="Result as JSON on stdout, nothing else there.")(command)
+    return click.option("--json", "as_json", is_flag=True, help="JSON on stdout, nothing else there.")(command)
 
 
-def emit(result: Any, text: str, as_json: bool) -> None:
+def emit(result: object, text: str, as_json: bool) -> None:
     """Print a result on stdout, as JSON or as text."""
     click.echo(json.dumps(result, indent=1, allow_nan=False) if as_json else text.rstrip("\n"))
 
@@ -71,7 +75,7 @@ def inspect(system_file: Path, as_json: bool, seed: int) -> None:
 @main.command()
 @system_argument
 @json_option
-@click.option("--out", "directory", type=click.Path(path_type=Path), help="Also write tables and figure into this folder.")
+@click.option("--out", "directory", type=click.Path(path_type=Path), help="Also write tables and a figure there.")
 @click.option("--scenario", "scenarios", multiple=True, help="Only this scenario (repeatable).")
 @click.option("--seed", default=0, show_default=True, help="Same seed and input, same output.")
 @click.option("--quiet", is_flag=True, help="Print no progress.")
@@ -105,7 +109,7 @@ def check_folder(directory: Path) -> None:
         raise InputError.single("--out", "", str(directory), "a folder, but it is a file", "Name another folder.")
 
 
-def write_results(system: Any, verdicts: Any, directory: Path) -> None:
+def write_results(system: System, verdicts: Verdicts, directory: Path) -> None:
     """Write verdicts.json, .csv, .ecsv and the figure, all or none."""
     from vetter.evaluation import prepare
     from vetter.observations.photometry import PhotometryObservation
@@ -115,9 +119,11 @@ def write_results(system: Any, verdicts: Any, directory: Path) -> None:
     photometry = next(o for o in observations if isinstance(o, PhotometryObservation))
     figure = figures.magnitudes_figure(verdicts, context, photometry)
     files: dict[str, str | bytes] = {
-        "verdicts.json": export.to_json(verdicts), "verdicts.csv": export.to_csv(verdicts),
+        "verdicts.json": export.to_json(verdicts),
+        "verdicts.csv": export.to_csv(verdicts),
         "verdicts.ecsv": export.to_ecsv(verdicts),
-        "magnitudes.png": figures.figure_bytes(figure, "png"), "magnitudes.pdf": figures.figure_bytes(figure, "pdf"),
+        "magnitudes.png": figures.figure_bytes(figure, "png"),
+        "magnitudes.pdf": figures.figure_bytes(figure, "pdf"),
     }
     try:
         written = export.write_whole(directory, files)
@@ -129,8 +135,14 @@ def write_results(system: Any, verdicts: Any, directory: Path) -> None:
 
 
 @main.command()
-@click.option("--star", "stars", multiple=True, required=True, metavar="TEFF,LOGG,RADIUS[,FEH]",
-              help="K, log10 of cm/s2, solar radii, dex (repeatable; the light is summed).")
+@click.option(
+    "--star",
+    "stars",
+    multiple=True,
+    required=True,
+    metavar="TEFF,LOGG,RADIUS[,FEH]",
+    help="K, log10 of cm/s2, solar radii, dex (repeatable; the light is summed).",
+)
 @click.option("--distance-pc", type=float, required=True)
 @click.option("--ebv", "ebv_mag", type=float, default=0.0, show_default=True, help="E(B-V), mag.")
 @click.option("--r-v", type=float, default=3.1, show_default=True)
@@ -138,14 +150,23 @@ def write_results(system: Any, verdicts: Any, directory: Path) -> None:
 @click.option("--window", "windows", multiple=True, metavar="LO-HI", help="Wavelength window in nm (repeatable).")
 @json_option
 def light(
-    stars: tuple[str, ...], distance_pc: float, ebv_mag: float, r_v: float, bands: tuple[str, ...],
-    windows: tuple[str, ...], as_json: bool,
+    stars: tuple[str, ...],
+    distance_pc: float,
+    ebv_mag: float,
+    r_v: float,
+    bands: tuple[str, ...],
+    windows: tuple[str, ...],
+    as_json: bool,
 ) -> None:
     """Magnitudes of each star and of their sum, and light ratios to the first star in windows."""
     from vetter.light.report import light_report, render_light
 
     found = light_report(
-        [numbers("--star", text, ",", (3, 4)) for text in stars], distance_pc, ebv_mag, r_v, bands,
+        [numbers("--star", text, ",", (3, 4)) for text in stars],
+        distance_pc,
+        ebv_mag,
+        r_v,
+        bands,
         [numbers("--window", text, "-", (2, 2)) for text in windows],
     )
     emit(found, render_light(found), as_json)

@@ -41,6 +41,7 @@ class InputError(ValueError):
     """
 
     def __init__(self, source: str, faults: Sequence[Fault]) -> None:
+        """Make the error; the message lists every fault."""
         self.source = source
         self.faults = tuple(faults)
         head = f"{source}: " if len(self.faults) == 1 else f"{source}: {len(self.faults)} faults\n  "

@@ -117,7 +117,10 @@ def prepare(system: System) -> tuple[Context, list[Observation]]:
     orbit = system.orbit
     if orbit.k1_km_s is None and orbit.photocentre_mas is None and orbit.thiele_innes is None:
         raise InputError.single(
-            system.source, "orbit", None, "k1_km_s, photocentre_mas or thiele_innes",
+            system.source,
+            "orbit",
+            None,
+            "k1_km_s, photocentre_mas or thiele_innes",
             "Epoch velocities alone are read but not fitted yet: give the semi-amplitude of your own fit as k1_km_s.",
         )
     context = build_context(system)
@@ -152,7 +155,8 @@ def run_scenario(
 def _run_branch(fit: Fit, seed: int, settings: Settings) -> BranchRun:
     posterior = importance.sample(fit, settings, seed)
     if posterior is None:
-        points = importance.prior_points(fit.dimension, SECOND_LOOK * settings.start_points, np.random.default_rng(seed))
+        many = SECOND_LOOK * settings.start_points
+        points = importance.prior_points(fit.dimension, many, np.random.default_rng(seed))
         if not np.isfinite(fit.evaluate(points).ln_prior_ratio).any():
             return BranchRun(fit, None, np.zeros(fit.dimension), np.inf, {}, fit.closed_because(points))
         posterior = importance.sample(fit, settings, seed, points)

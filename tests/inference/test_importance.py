@@ -13,7 +13,7 @@ SETTINGS = Settings()
 
 @pytest.mark.parametrize("dimension", [4, 7, 10])
 @pytest.mark.parametrize(("width", "centre"), [(1e-3, 1.0), (0.3, 0.5), (3.0, -2.0)])
-def test_gaussian_evidence_is_exact_within_its_error(gaussian, dimension, width, centre):
+def test_gaussian_evidence_is_exact_within_its_error(gaussian, dimension, width, centre) -> None:
     problem = gaussian(dimension, width, centre)
     found = sample(problem, SETTINGS, 1)
     assert found.ln_evidence == pytest.approx(problem.truth, abs=4.0 * found.ln_evidence_error)
@@ -22,7 +22,7 @@ def test_gaussian_evidence_is_exact_within_its_error(gaussian, dimension, width,
 
 
 @pytest.mark.parametrize("dimension", [4, 7, 10])
-def test_both_modes_are_found_and_weighed(two_modes, dimension):
+def test_both_modes_are_found_and_weighed(two_modes, dimension) -> None:
     problem = two_modes(dimension)
     found = sample(problem, SETTINGS, 2)
     assert found.ln_evidence == pytest.approx(problem.truth, abs=4.0 * found.ln_evidence_error)
@@ -31,14 +31,14 @@ def test_both_modes_are_found_and_weighed(two_modes, dimension):
 
 
 @pytest.mark.parametrize("wall", [0.0, -0.2])
-def test_a_wall_through_the_posterior(gaussian, wall):
+def test_a_wall_through_the_posterior(gaussian, wall) -> None:
     problem = gaussian(7, 0.1, 0.0, wall)
     found = sample(problem, SETTINGS, 3)
     assert found.ln_evidence == pytest.approx(problem.truth, abs=4.0 * found.ln_evidence_error)
     assert np.all(found.x[found.weights > 0.0, 0] <= wall)
 
 
-def test_a_curved_valley_agrees_with_quadrature(banana):
+def test_a_curved_valley_agrees_with_quadrature(banana) -> None:
     """The chain of coordinates integrates one at a time: ln Z by nested quadrature on a fine grid."""
     grid = np.linspace(-7.0, 7.0, 1401)
     step = grid[1] - grid[0]
@@ -53,7 +53,7 @@ def test_a_curved_valley_agrees_with_quadrature(banana):
     assert found.ln_evidence == pytest.approx(truth, abs=4.0 * found.ln_evidence_error)
 
 
-def test_quoted_error_is_the_scatter_over_seeds(two_modes):
+def test_quoted_error_is_the_scatter_over_seeds(two_modes) -> None:
     """With 24 seeds the scatter of a scatter is 15 %: 0.55-1.6 is a four-sigma band about one."""
     problem = two_modes(5)
     runs = [sample(problem, SETTINGS, seed) for seed in range(24)]
@@ -62,7 +62,7 @@ def test_quoted_error_is_the_scatter_over_seeds(two_modes):
     assert 0.55 < scatter / quoted < 1.6
 
 
-def test_same_seed_same_bytes_and_another_seed_differs(two_modes):
+def test_same_seed_same_bytes_and_another_seed_differs(two_modes) -> None:
     problem = two_modes(4)
     first, again, other = (sample(problem, SETTINGS, seed) for seed in (5, 5, 6))
     assert first.x.tobytes() == again.x.tobytes()
@@ -79,5 +79,5 @@ class _Closed:
         return open_ground(x)._replace(ln_prior_ratio=np.full(len(x), -np.inf), excess=np.ones(len(x)))
 
 
-def test_a_closed_prior_returns_nothing():
+def test_a_closed_prior_returns_nothing() -> None:
     assert sample(_Closed(), SETTINGS, 0) is None

@@ -36,7 +36,7 @@ def _scipy(problem: _Curve, start: np.ndarray, pull: np.ndarray, keep: np.ndarra
     return 2.0 * least_squares(residuals, start, xtol=1e-12, ftol=1e-12).cost
 
 
-def test_every_start_ends_where_scipy_does():
+def test_every_start_ends_where_scipy_does() -> None:
     problem = _Curve()
     pull = np.array([0.0, 0.0, 0.0, 1.0])
     starts = np.array([[1.0, 1.9, 0.2, 0.0], [1.5, 2.1, 0.5, 0.2], [0.8, 2.0, 0.0, -0.2]])
@@ -47,7 +47,7 @@ def test_every_start_ends_where_scipy_does():
         assert found.chi2[row] == pytest.approx(_scipy(problem, start, pull, keep[row]), rel=1e-5)
 
 
-def test_a_smooth_wall_is_leant_on(gaussian):
+def test_a_smooth_wall_is_leant_on(gaussian) -> None:
     """The best point beyond a wall is the point of the wall itself."""
     found = minimise(gaussian(3, 0.1, 1.0, wall=0.5), np.zeros((1, 3)), np.ones((1, 3)), prior=False)
     np.testing.assert_allclose(found.x[0], [0.5, 1.0, 1.0], atol=1e-4)
@@ -65,7 +65,7 @@ class _Closed:
         return open_ground(x)._replace(ln_prior_ratio=np.full(n, -np.inf), excess=np.ones(n))
 
 
-def test_closed_ground_has_no_best_fit():
+def test_closed_ground_has_no_best_fit() -> None:
     assert minimise(_Closed(), np.zeros((3, 2)), np.ones((3, 2)), prior=False).chi2.tolist() == [np.inf] * 3
 
 
@@ -78,6 +78,6 @@ class _Runaway:
         return open_ground(x - np.array([100.0, 1.0]))
 
 
-def test_the_box_holds_and_the_other_coordinate_still_converges():
+def test_the_box_holds_and_the_other_coordinate_still_converges() -> None:
     found = minimise(_Runaway(), np.zeros((1, 2)), np.ones((1, 2)), prior=False)
     np.testing.assert_allclose(found.x[0], [LARGEST_COORDINATE, 1.0], atol=1e-3)

@@ -14,7 +14,7 @@ def _mixture() -> student.StudentMixture:
     return student.from_moments(np.array([0.7, 0.3]), np.array([[0.0, 0.0], [5.0, -3.0]]), covariance)
 
 
-def test_density_equals_scipy():
+def test_density_equals_scipy() -> None:
     mixture = _mixture()
     x = np.random.default_rng(0).normal(size=(50, 2)) * 3.0
     parts = [
@@ -24,7 +24,7 @@ def test_density_equals_scipy():
     np.testing.assert_allclose(mixture.ln_density(x), np.log(np.sum(parts, axis=0)), rtol=1e-10)
 
 
-def test_draws_follow_the_density():
+def test_draws_follow_the_density() -> None:
     """The mean of (another density / density) over draws is one: the t with wider scale as that other density."""
     mixture = _mixture()
     x = mixture.draw(200000, np.random.default_rng(1))
@@ -33,7 +33,7 @@ def test_draws_follow_the_density():
     assert ratio.mean() == pytest.approx(1.0, abs=4.0 * ratio.std() / np.sqrt(ratio.size))
 
 
-def test_fit_recovers_components():
+def test_fit_recovers_components() -> None:
     rng = np.random.default_rng(2)
     x = _mixture().draw(20000, rng)
     fitted = student.fit(x, np.full(len(x), 1.0 / len(x)), 2, rng)
@@ -43,7 +43,7 @@ def test_fit_recovers_components():
     np.testing.assert_allclose(fitted.factor[order][0] @ fitted.factor[order][0].T, [[1.0, 0.3], [0.3, 0.5]], atol=0.1)
 
 
-def test_wide_component_is_twice_as_wide():
+def test_wide_component_is_twice_as_wide() -> None:
     rng = np.random.default_rng(3)
     x = rng.normal(size=(5000, 3))
     weights = np.full(5000, 1.0 / 5000)

@@ -113,7 +113,10 @@ def test_the_sun_on_the_main_sequence() -> None:
     [
         # Field M dwarfs with interferometric radii (Boyajian et al. 2012, ApJ 757, 112; from memory): GJ 411, GJ 887,
         # GJ 699, and Proxima (Demory et al. 2009, A&A 505, 205; from memory).
-        (3465, 0.392, 0.392, 60), (3676, 0.490, 0.471, 60), (3230, 0.155, 0.187, 60), (3054, 0.122, 0.141, 80),
+        (3465, 0.392, 0.392, 60),
+        (3676, 0.490, 0.471, 60),
+        (3230, 0.155, 0.187, 60),
+        (3054, 0.122, 0.141, 80),
     ],
 )
 def test_field_m_dwarfs(teff: float, mass: float, radius: float, teff_error: float) -> None:
@@ -125,8 +128,13 @@ def test_field_m_dwarfs(teff: float, mass: float, radius: float, teff_error: flo
 
 @pytest.mark.parametrize(
     ("spectral_type", "teff", "log_l", "radius", "mass"),
-    [("F0V", 7220, 0.86, 1.728, 1.61), ("G2V", 5770, 0.01, 1.012, 1.00), ("K0V", 5270, -0.34, 0.813, 0.88),
-     ("B2V", 20600, 3.43, 4.06, 7.3), ("O9V", 33300, 4.82, 7.72, 20.2)],
+    [
+        ("F0V", 7220, 0.86, 1.728, 1.61),
+        ("G2V", 5770, 0.01, 1.012, 1.00),
+        ("K0V", 5270, -0.34, 0.813, 0.88),
+        ("B2V", 20600, 3.43, 4.06, 7.3),
+        ("O9V", 33300, 4.82, 7.72, 20.2),
+    ],
 )
 def test_mean_dwarfs_lie_inside_a_life(
     spectral_type: str, teff: float, log_l: float, radius: float, mass: float

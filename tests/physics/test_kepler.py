@@ -29,8 +29,8 @@ def test_mass_functions_of_x_ray_binaries(
 
 
 @pytest.mark.parametrize(
-    ("k_km_s", "period_d", "expected"), [(74.9, 5.5998, 0.2438), (208.5, 6.4714, 6.078), (228.2, 2.62157, 3.228),
-                                         (140.0, 33.5, 9.525)]
+    ("k_km_s", "period_d", "expected"),
+    [(74.9, 5.5998, 0.2438), (208.5, 6.4714, 6.078), (228.2, 2.62157, 3.228), (140.0, 33.5, 9.525)],
 )
 def test_mass_function_worked_by_hand(k_km_s: float, period_d: float, expected: float) -> None:
     # 1.036149e-7 K^3 P, the factor of the standard textbooks; expected to the digits given.

@@ -97,8 +97,10 @@ def test_up_is_brighter_and_warm_is_smaller() -> None:
 
 def test_no_star_outside_the_ranges() -> None:
     star = evolved.evolved_star(
-        [0.4, 61.0, 1.0, 1.0, 1.0, np.nan, 1.0], [0.5, 0.5, 1.1, 0.5, 0.5, 0.5, 0.5],
-        [0.5, 0.5, 0.5, -0.1, 0.5, 0.5, 0.5], [0.0, 0.0, 0.0, 0.0, 0.8, 0.0, 0.0],
+        [0.4, 61.0, 1.0, 1.0, 1.0, np.nan, 1.0],
+        [0.5, 0.5, 1.1, 0.5, 0.5, 0.5, 0.5],
+        [0.5, 0.5, 0.5, -0.1, 0.5, 0.5, 0.5],
+        [0.0, 0.0, 0.0, 0.0, 0.8, 0.0, 0.0],
     )
     assert star.valid.tolist() == [False] * 6 + [True]
     assert all(np.all(np.isfinite(column)) for column in star)

@@ -64,13 +64,27 @@ def test_zero_age_against_a_plain_transcription(mass: float, z: float) -> None:
     luminosity, radius = hpt.zero_age(mass, z)
     assert luminosity == pytest.approx(
         (low["alpha"] * mass**5.5 + low["beta"] * mass**11)
-        / (low["gamma"] + mass**3 + low["delta"] * mass**5 + low["epsilon"] * mass**7 + low["zeta"] * mass**8
-           + low["eta"] * mass**9.5), rel=1e-11)
+        / (
+            low["gamma"]
+            + mass**3
+            + low["delta"] * mass**5
+            + low["epsilon"] * mass**7
+            + low["zeta"] * mass**8
+            + low["eta"] * mass**9.5
+        ),
+        rel=1e-11,
+    )
     assert radius == pytest.approx(
-        (rad["theta"] * mass**2.5 + rad["iota"] * mass**6.5 + rad["kappa"] * mass**11 + rad["lambda"] * mass**19
-         + rad["mu"] * mass**19.5)
+        (
+            rad["theta"] * mass**2.5
+            + rad["iota"] * mass**6.5
+            + rad["kappa"] * mass**11
+            + rad["lambda"] * mass**19
+            + rad["mu"] * mass**19.5
+        )
         / (rad["nu"] + rad["xi"] * mass**2 + rad["omicron"] * mass**8.5 + mass**18.5 + rad["pi"] * mass**19.5),
-        rel=1e-11)
+        rel=1e-11,
+    )
 
 
 def test_paper_and_code_differ_little_in_lifetime() -> None:

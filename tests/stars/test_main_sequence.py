@@ -18,8 +18,12 @@ scores = st.floats(-4.0, 4.0)
 
 # PHYSICS of the scatter: mass inside each range, sigma log10 L, sigma ln R, sigma ln Teff.
 SCATTER = [
-    (0.4, 0.06, 0.05, 0.025), (0.72, 0.05, 0.04, 0.02), (1.2, 0.04, 0.04, 0.02), (2.0, 0.06, 0.06, 0.03),
-    (8.0, 0.04, 0.05, 0.03), (35.0, 0.06, 0.12, 0.06),
+    (0.4, 0.06, 0.05, 0.025),
+    (0.72, 0.05, 0.04, 0.02),
+    (1.2, 0.04, 0.04, 0.02),
+    (2.0, 0.06, 0.06, 0.03),
+    (8.0, 0.04, 0.05, 0.03),
+    (35.0, 0.06, 0.12, 0.06),
 ]
 
 
@@ -92,9 +96,7 @@ def test_extra_scatter_far_from_solar_metallicity() -> None:
     assert far.correlation * far.ln_luminosity == pytest.approx(near.correlation * near.ln_luminosity)
 
 
-@pytest.mark.parametrize(
-    ("mass", "log_l", "ln_r", "ln_teff"), [(0.4, -0.10, 0.02, -0.07), (0.6, -0.29, 0.0, -0.17)]
-)
+@pytest.mark.parametrize(("mass", "log_l", "ln_r", "ln_teff"), [(0.4, -0.10, 0.02, -0.07), (0.6, -0.29, 0.0, -0.17)])
 def test_metallicity_slopes_of_cool_dwarfs(mass: float, log_l: float, ln_r: float, ln_teff: float) -> None:
     poor, rich = main_sequence(mass, 0.5, -0.2), main_sequence(mass, 0.5, 0.2)
     assert np.log10(rich.luminosity_lsun / poor.luminosity_lsun) / 0.4 == pytest.approx(log_l, abs=1e-9)
@@ -134,8 +136,18 @@ def test_brighter_with_mass_at_half_life() -> None:
 
 @pytest.mark.parametrize(
     ("mass", "tau", "feh"),
-    [(0.0769, 0.5, 0.0), (101.0, 0.5, 0.0), (-1.0, 0.5, 0.0), (1.0, -0.01, 0.0), (1.0, 1.01, 0.0), (1.0, 0.5, -3.1),
-     (1.0, 0.5, 0.71), (np.nan, 0.5, 0.0), (1.0, np.nan, 0.0), (1.0, 0.5, np.nan)],
+    [
+        (0.0769, 0.5, 0.0),
+        (101.0, 0.5, 0.0),
+        (-1.0, 0.5, 0.0),
+        (1.0, -0.01, 0.0),
+        (1.0, 1.01, 0.0),
+        (1.0, 0.5, -3.1),
+        (1.0, 0.5, 0.71),
+        (np.nan, 0.5, 0.0),
+        (1.0, np.nan, 0.0),
+        (1.0, 0.5, np.nan),
+    ],
 )
 def test_no_star_outside_the_ranges(mass: float, tau: float, feh: float) -> None:
     star = main_sequence([mass, 1.0], [tau, 0.5], [feh, 0.0])

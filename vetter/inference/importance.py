@@ -40,7 +40,8 @@ class Settings:
     rung_points : draws per adaptation round
     rungs : most adaptation rounds
     components : most t components of the proposal
-    effective : effective sample size to reach
+    effective : effective sample size to aim at
+    error : largest error of ln evidence to accept
     pareto_k : largest Pareto k to accept
     last_points : most draws in the last round
     """
@@ -51,6 +52,7 @@ class Settings:
     rungs: int = 14
     components: int = 8
     effective: float = 2000.0
+    error: float = 0.05
     pareto_k: float = 0.7
     last_points: int = 32768
 
@@ -67,7 +69,7 @@ class Posterior:
     ln_evidence, ln_evidence_error : logarithm of the evidence and its standard error
     effective_sample_size, pareto_k : diagnostics of the weights
     evaluations : points at which the model was evaluated by the sampler (the polishing not counted)
-    converged : whether both diagnostics reached the settings
+    converged : whether the error and Pareto k are within the settings
     """
 
     x: FloatArray
@@ -86,9 +88,7 @@ class Posterior:
         return diagnostics.normalised_weights(self.ln_weights)
 
 
-def sample(
-    problem: Problem, settings: Settings, seed: int, start: FloatArray | None = None
-) -> Posterior | None:
+def sample(problem: Problem, settings: Settings, seed: int, start: FloatArray | None = None) -> Posterior | None:
     """Return the posterior of ``problem``, or None when no starting point is on allowed ground.
 
     ``start`` (n, dimension) replaces the Sobol points over the prior that the search for modes begins with.
@@ -108,8 +108,15 @@ def sample(
     effective = diagnostics.effective_sample_size(ln_weights)
     shape = diagnostics.pareto_shape(ln_weights)
     return Posterior(
-        x, ln_weights, modes, ln_evidence, error, effective, shape, len(start) + evaluations + more,
-        bool(effective >= settings.effective and shape < settings.pareto_k),
+        x,
+        ln_weights,
+        modes,
+        ln_evidence,
+        error,
+        effective,
+        shape,
+        len(start) + evaluations + more,
+        bool(error <= settings.error and shape < settings.pareto_k),
     )
 
 

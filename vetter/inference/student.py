@@ -79,7 +79,7 @@ class StudentMixture:
 
 def from_moments(share: FloatArray, mean: FloatArray, covariance: FloatArray) -> StudentMixture:
     """Return a mixture from shares (k,), means (k, d) and positive-definite scale matrices (k, d, d)."""
-    return StudentMixture(share / share.sum(), mean, np.linalg.cholesky(covariance))
+    return StudentMixture(share / share.sum(), mean, np.asarray(np.linalg.cholesky(covariance), dtype=np.float64))
 
 
 def joined(first: StudentMixture, second: StudentMixture, share: float) -> StudentMixture:

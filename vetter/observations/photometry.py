@@ -128,4 +128,4 @@ def model_errors_mag(system: System, engine: LightEngine) -> FloatArray:
     feh = 0.0 if seen.feh is None else seen.feh.value
     temperatures = np.linspace(4000.0, 10000.0, 13) if seen.teff_k is None else np.array([seen.teff_k.value])
     errors = [[float(engine.model_error_mag(band, t, logg, feh)) for band in engine.bands] for t in temperatures]
-    return np.maximum(np.max(np.array(errors), axis=0), 0.01)
+    return np.asarray(np.maximum(np.max(np.array(errors), axis=0), 0.01))

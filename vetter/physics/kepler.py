@@ -60,9 +60,7 @@ def semi_amplitude_km_s(
     return np.asarray(speed * m2 / (m1 + m2) * np.asarray(sin_inclination) / np.sqrt(1.0 - e * e))
 
 
-def companion_mass_msun(
-    mass_function: ArrayLike, mass_msun: ArrayLike, sin_inclination: ArrayLike = 1.0
-) -> FloatArray:
+def companion_mass_msun(mass_function: ArrayLike, mass_msun: ArrayLike, sin_inclination: ArrayLike = 1.0) -> FloatArray:
     """Return the companion's mass (Msun) that solves f = M2^3 sin^3 i / (M1 + M2)^2.
 
     ``mass_function`` >= 0 and ``mass_msun`` >= 0 in solar masses, 0 < ``sin_inclination`` <= 1. The cubic has exactly

@@ -94,8 +94,12 @@ def jacobian(a_mas: ArrayLike, b_mas: ArrayLike, f_mas: ArrayLike, g_mas: ArrayL
     # tan(i/2)^2 = m/p, hence di = sqrt(m p) / (m + p) (dm/m - dp/p).
     root = np.sqrt(m * p) / (m + p)
     d_i = (root / m)[..., None] * d_m - (root / p)[..., None] * d_p
-    rows = [0.5 * (d_p + d_m), np.degrees(d_i), np.degrees(0.5 * (d_plus - d_minus)),
-            np.degrees(0.5 * (d_plus + d_minus))]
+    rows = [
+        0.5 * (d_p + d_m),
+        np.degrees(d_i),
+        np.degrees(0.5 * (d_plus - d_minus)),
+        np.degrees(0.5 * (d_plus + d_minus)),
+    ]
     return np.asarray(np.stack(rows, axis=-2) + zero[..., None, None])
 
 

@@ -28,7 +28,9 @@ if TYPE_CHECKING:
 
 FloatArray = NDArray[np.float64]
 
-OPTIONAL_TABLES = ("extinction", "primary", "velocities", "variability", "x_ray", "imaging")
+NOT_FITTED = ("velocities", "variability", "x_ray", "imaging")
+"""Tables of the system file that are read but that no observation uses yet."""
+
 EDGE_COORDINATE = 3.1
 """A best fit beyond this normal coordinate (outer thousandth of the prior) is said to sit on the prior's edge."""
 
@@ -61,9 +63,16 @@ def compare(context: Context, observations: Sequence[Observation], runs: Sequenc
     summary = orbit_summary(context, runs)
     said = cautions(context, observations, runs, rows)
     return Verdicts(
-        context.system.name, version("companion-vetter"), seed, summary,
+        context.system.name,
+        version("companion-vetter"),
+        seed,
+        summary,
         tuple(observation.name for observation in observations),
-        tuple(observation.describe() for observation in observations), absent, tuple(rows), weights, tuple(said),
+        tuple(observation.describe() for observation in observations),
+        absent,
+        tuple(rows),
+        weights,
+        tuple(said),
     )
 
 
@@ -81,8 +90,12 @@ def _least_without(run: ScenarioRun, name: str) -> float:
 
 
 def _row(
-    run: ScenarioRun, context: Context, observations: Sequence[Observation], sigma: float | None,
-    drivers: tuple[Driver, ...], odds: float,
+    run: ScenarioRun,
+    context: Context,
+    observations: Sequence[Observation],
+    sigma: float | None,
+    drivers: tuple[Driver, ...],
+    odds: float,
 ) -> ScenarioVerdict:
     best = run.best
     n_data = sum(observation.count for observation in observations)
@@ -90,17 +103,23 @@ def _row(
     closed = sigma is None
     evidence = run.ln_evidence
     return ScenarioVerdict(
-        name=run.scenario.name, title=run.scenario.title, ordinary=run.scenario.ordinary,
-        verdict=verdict_word(sigma), sigma=sigma,
+        name=run.scenario.name,
+        title=run.scenario.title,
+        ordinary=run.scenario.ordinary,
+        verdict=verdict_word(sigma),
+        sigma=sigma,
         ln_likelihood_max=None if closed else best.fit.ln_norm - 0.5 * best.chi2,
         chi2_min=None if closed else best.chi2,
-        n_data=n_data, n_free=best.fit.dimension,
+        n_data=n_data,
+        n_free=best.fit.dimension,
         # Each score of a relation counts as a datum and as a parameter.
         fit_p_value=None if closed else _p_value(best.chi2, max(n_data + n_scores - best.fit.dimension, 1)),
-        ln_evidence=evidence, ln_evidence_error=None if evidence is None else _evidence_error(run),
+        ln_evidence=evidence,
+        ln_evidence_error=None if evidence is None else _evidence_error(run),
         posterior_odds_to_best=odds,
         companion_mass_msun=None if evidence is None else _mass_interval(run),
-        driven_by=drivers, diagnostics=None if evidence is None else _diagnostics(run),
+        driven_by=drivers,
+        diagnostics=None if evidence is None else _diagnostics(run),
         best_fit=None if closed else _best_fit(best, context),
         closed_because=best.closed_because if closed else None,
         priors={p.name: p.prior.describe(p.unit) for p in best.fit.branch.parameters},
@@ -145,8 +164,11 @@ def _diagnostics(run: ScenarioRun) -> Diagnostics:
         raise RuntimeError("a closed branch cannot carry the evidence")
     evaluations = sum(branch.posterior.evaluations for branch in run.branches if branch.posterior is not None)
     return Diagnostics(
-        round(posterior.effective_sample_size, 1), round(posterior.pareto_k, 3), evaluations,
-        "adaptive importance sampling", posterior.converged,
+        round(posterior.effective_sample_size, 1),
+        round(posterior.pareto_k, 3),
+        evaluations,
+        "adaptive importance sampling",
+        posterior.converged,
     )
 
 
@@ -171,7 +193,7 @@ def absent_observations(context: Context, observations: Sequence[Observation]) -
     used = {observation.name for observation in observations}
     system = context.system
     absent = [kind.name for kind in registered() if kind.name not in used]
-    return tuple(absent + [name for name in ("velocities", "variability", "x_ray", "imaging") if getattr(system, name) is None])
+    return tuple(absent + [name for name in NOT_FITTED if name not in absent and getattr(system, name) is None])
 
 
 def orbit_summary(context: Context, runs: Sequence[ScenarioRun]) -> OrbitSummary:

@@ -70,8 +70,10 @@ def records(verdicts: Verdicts) -> list[dict[str, Any]]:
         low, median, high = scenario.companion_mass_msun or (None, None, None)
         row = {name: getattr(scenario, name, None) for name in COLUMNS}
         row |= {
-            "scenario": scenario.name, "companion_mass_low_msun": low,
-            "companion_mass_median_msun": median, "companion_mass_high_msun": high,
+            "scenario": scenario.name,
+            "companion_mass_low_msun": low,
+            "companion_mass_median_msun": median,
+            "companion_mass_high_msun": high,
         }
         rows.append(row)
     return rows

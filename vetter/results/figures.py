@@ -13,18 +13,27 @@ if TYPE_CHECKING:
     from matplotlib.axes import Axes
     from matplotlib.figure import Figure
 
-    from vetter.evaluation import Context
     from vetter.observations.photometry import PhotometryObservation
+    from vetter.scenarios.context import Context
 
 HUES = ("#0072b2", "#d55e00", "#009e73", "#cc79a7", "#56b4e9", "#e69f00", "#7f7f7f", "#000000")
 """Okabe & Ito's colours, told apart by colour-blind readers (jfly.uni-koeln.de/color, 2008)."""
 
 MARKS = ("o", "s", "^", "D", "v", "P", "X", "*")
 
-STYLE: dict[str, Any] = {
-    "font.size": 9, "axes.titlesize": 9, "axes.labelsize": 9, "legend.fontsize": 7.5, "xtick.labelsize": 8,
-    "ytick.labelsize": 8, "axes.spines.top": False, "axes.spines.right": False, "axes.linewidth": 0.8,
-    "pdf.fonttype": 42, "svg.fonttype": "path", "savefig.dpi": 200,
+STYLE: Any = {
+    "font.size": 9,
+    "axes.titlesize": 9,
+    "axes.labelsize": 9,
+    "legend.fontsize": 7.5,
+    "xtick.labelsize": 8,
+    "ytick.labelsize": 8,
+    "axes.spines.top": False,
+    "axes.spines.right": False,
+    "axes.linewidth": 0.8,
+    "pdf.fonttype": 42,
+    "svg.fonttype": "path",
+    "savefig.dpi": 200,
 }
 
 
@@ -33,7 +42,7 @@ def magnitudes_figure(verdicts: Verdicts, context: Context, photometry: Photomet
     import matplotlib as mpl
     from matplotlib.figure import Figure
 
-    with mpl.rc_context(STYLE):
+    with mpl.rc_context(rc=STYLE):
         figure = Figure(figsize=(6.8, 5.2), layout="constrained")
         top, bottom = figure.subplots(2, 1, sharex=True, height_ratios=(2.2, 1.0))
         micron = np.array(context.engine.pivots_angstrom[: len(context.engine.bands)]) / 1e4
@@ -55,8 +64,14 @@ def figure_bytes(figure: Figure, kind: str) -> bytes:
 
 
 def _scenario_marks(
-    top: Axes, bottom: Axes, scenario: ScenarioVerdict, place: int, count: int, micron: np.ndarray[Any, Any],
-    context: Context, photometry: PhotometryObservation,
+    top: Axes,
+    bottom: Axes,
+    scenario: ScenarioVerdict,
+    place: int,
+    count: int,
+    micron: np.ndarray[Any, Any],
+    context: Context,
+    photometry: PhotometryObservation,
 ) -> None:
     """One scenario: open marks joined by a thin line above, its residuals below, nudged sideways to be told apart."""
     if scenario.best_fit is None:
@@ -67,12 +82,25 @@ def _scenario_marks(
     nudge = 1.0 + 0.02 * (place - (count - 1) / 2.0)
     sigma = "" if scenario.sigma is None else f", {scenario.sigma:.1f} sigma"
     top.plot(
-        micron[order], model[order], "-", color=hue, marker=mark, markersize=5, markerfacecolor="none", linewidth=0.9,
-        label=f"{scenario.title} ({scenario.verdict}{sigma})", zorder=2,
+        micron[order],
+        model[order],
+        "-",
+        color=hue,
+        marker=mark,
+        markersize=5,
+        markerfacecolor="none",
+        linewidth=0.9,
+        label=f"{scenario.title} ({scenario.verdict}{sigma})",
+        zorder=2,
     )
     residual = (photometry.mag - model[photometry.index]) / photometry.sigma_mag
     bottom.plot(
-        micron[photometry.index] * nudge, residual, linestyle="none", color=hue, marker=mark, markersize=5,
+        micron[photometry.index] * nudge,
+        residual,
+        linestyle="none",
+        color=hue,
+        marker=mark,
+        markersize=5,
         markerfacecolor="none",
     )
 
@@ -80,8 +108,16 @@ def _scenario_marks(
 def _measured(top: Axes, context: Context, photometry: PhotometryObservation, micron: np.ndarray[Any, Any]) -> None:
     """The measured magnitudes with measured and model error, in black."""
     top.errorbar(
-        micron[photometry.index], photometry.mag, yerr=photometry.sigma_mag, fmt="o", color="black", markersize=3.5,
-        capsize=2.5, linewidth=1.2, label="measured (error with model error)", zorder=3,
+        micron[photometry.index],
+        photometry.mag,
+        yerr=photometry.sigma_mag,
+        fmt="o",
+        color="black",
+        markersize=3.5,
+        capsize=2.5,
+        linewidth=1.2,
+        label="measured (error with model error)",
+        zorder=3,
     )
 
 
@@ -97,9 +133,7 @@ def _limits(top: Axes, photometry: PhotometryObservation, micron: np.ndarray[Any
         )
 
 
-def _finish(
-    top: Axes, bottom: Axes, verdicts: Verdicts, context: Context, micron: np.ndarray[Any, Any]
-) -> None:
+def _finish(top: Axes, bottom: Axes, verdicts: Verdicts, context: Context, micron: np.ndarray[Any, Any]) -> None:
     """Axes, labels, band names and legend."""
     top.set_xscale("log")
     top.invert_yaxis()
@@ -110,7 +144,7 @@ def _finish(
     bottom.axhline(0.0, color="0.5", linewidth=0.8, zorder=1)
     bottom.set_ylabel("measured - model\n(sigma)")
     bottom.set_xlabel("pivot wavelength (micron)")
-    ticks = [t for t in (0.15, 0.2, 0.3, 0.4, 0.5, 0.7, 1.0, 1.5, 2.0, 3.0, 5.0, 10.0, 20.0)]
+    ticks = (0.15, 0.2, 0.3, 0.4, 0.5, 0.7, 1.0, 1.5, 2.0, 3.0, 5.0, 10.0, 20.0)
     low, high = micron.min() * 0.85, micron.max() * 1.18
     shown = [t for t in ticks if low <= t <= high]
     bottom.set_xlim(low, high)

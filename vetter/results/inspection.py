@@ -13,6 +13,7 @@ from vetter.observations.astrometry import measured_inclination
 from vetter.observations.orbit import k1_error_km_s
 from vetter.physics import kepler, roche
 from vetter.scenarios.context import build_context
+from vetter.scenarios.priors import LogUniform
 from vetter.scenarios.seen_star import GIANT_MASS_RANGE_MSUN, SeenStarState, ordinary_seen_stars
 from vetter.stars.main_sequence import main_sequence
 from vetter.stars.properties import radius_from_gravity_rsun
@@ -37,10 +38,16 @@ def inspect(system: System, seed: int = 0) -> dict[str, Any]:
     star, words = _seen_star(system, rng)
     orbit = system.orbit
     out: dict[str, Any] = {
-        "system": system.name, "seen_star": words,
-        "seen_star_mass_msun": _spread(star.mass_msun), "seen_star_radius_rsun": _spread(star.radius_rsun),
-        "mass_function_msun": None, "companion_mass_min_msun": None, "companion_mass_msun": None,
-        "separation_au": None, "roche_lobe_rsun": None, "added_light": None,
+        "system": system.name,
+        "seen_star": words,
+        "seen_star_mass_msun": _spread(star.mass_msun),
+        "seen_star_radius_rsun": _spread(star.radius_rsun),
+        "mass_function_msun": None,
+        "companion_mass_min_msun": None,
+        "companion_mass_msun": None,
+        "separation_au": None,
+        "roche_lobe_rsun": None,
+        "added_light": None,
     }
     if orbit.k1_km_s is None:
         return out
@@ -84,7 +91,7 @@ def _seen_star(system: System, rng: np.random.Generator) -> tuple[SeenStarState,
         drawn = np.maximum(_drawn(mass, rng), 0.01)
         return star._replace(mass_msun=drawn, radius_rsun=radius_from_gravity_rsun(drawn, star.logg)), "the mass given"
     if system.primary.teff_k is None or system.primary.logg is None:
-        drawn = np.asarray(GIANT_MASS_RANGE_MSUN[0] * (GIANT_MASS_RANGE_MSUN[1] / GIANT_MASS_RANGE_MSUN[0]) ** rng.random(DRAWS))
+        drawn = LogUniform(*GIANT_MASS_RANGE_MSUN).from_normal(rng.standard_normal(DRAWS))
         radius = radius_from_gravity_rsun(drawn, star.logg)
         return star._replace(mass_msun=drawn, radius_rsun=radius), "unknown: give teff_k and logg, or mass_msun"
     return star, kind.words
@@ -99,8 +106,8 @@ def _added_light(system: System, star: SeenStarState, companion_msun: float) -> 
     companion = main_sequence(mass, 0.5 * one, feh)
     if companion_msun > HEAVIEST_MAIN_SEQUENCE_MSUN or not bool(companion.valid[0]):
         return dict.fromkeys(bands)
-    seen = Component("star", *(np.array([float(np.median(v))]) for v in (star.teff_k, star.logg)), feh,
-                     np.array([float(np.median(star.radius_rsun))]))
+    teff, logg, radius = (np.array([float(np.median(v))]) for v in (star.teff_k, star.logg, star.radius_rsun))
+    seen = Component("star", teff, logg, feh, radius)
     other = Component("star", companion.teff_k, companion.logg, feh, companion.radius_rsun)
     difference = context.engine.magnitudes(seen, 10.0, 0.0) - context.engine.magnitudes(other, 10.0, 0.0)
     return dict(zip(bands, (10.0 ** (0.4 * difference[0, : len(bands)])).tolist(), strict=True))

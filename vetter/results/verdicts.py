@@ -78,10 +78,17 @@ class ScenarioVerdict:
         best = self.best_fit
         diagnostics = self.diagnostics
         return {
-            "name": self.name, "title": self.title, "verdict": self.verdict, "sigma": self.sigma,
-            "ln_likelihood_max": self.ln_likelihood_max, "chi2_min": self.chi2_min,
-            "n_data": self.n_data, "n_free": self.n_free, "fit_p_value": self.fit_p_value,
-            "ln_evidence": self.ln_evidence, "ln_evidence_error": self.ln_evidence_error,
+            "name": self.name,
+            "title": self.title,
+            "verdict": self.verdict,
+            "sigma": self.sigma,
+            "ln_likelihood_max": self.ln_likelihood_max,
+            "chi2_min": self.chi2_min,
+            "n_data": self.n_data,
+            "n_free": self.n_free,
+            "fit_p_value": self.fit_p_value,
+            "ln_evidence": self.ln_evidence,
+            "ln_evidence_error": self.ln_evidence_error,
             "posterior_odds_to_best": self.posterior_odds_to_best,
             "companion_mass_msun": None if self.companion_mass_msun is None else list(self.companion_mass_msun),
             "driven_by": [{"observation": d.observation, "sigma_without": d.sigma_without} for d in self.driven_by],
@@ -90,7 +97,8 @@ class ScenarioVerdict:
             "best_fit": None if best is None else dict(best.values),
             "best_fit_magnitudes": None if best is None else dict(best.magnitudes),
             "at_prior_edge": [] if best is None else list(best.at_edge),
-            "priors": dict(self.priors), "seen_star": self.seen_star,
+            "priors": dict(self.priors),
+            "seen_star": self.seen_star,
         }
 
 
@@ -154,12 +162,17 @@ class Verdicts:
     def to_dict(self) -> dict[str, Any]:
         """Return the content of verdicts.json."""
         return {
-            "system": self.system, "version": self.version, "seed": self.seed,
+            "system": self.system,
+            "version": self.version,
+            "seed": self.seed,
             "orbit": vars(self.orbit),
-            "observations_used": list(self.observations_used), "observations_absent": list(self.observations_absent),
-            "nothing_fits": self.nothing_fits, "headline": headline(self),
+            "observations_used": list(self.observations_used),
+            "observations_absent": list(self.observations_absent),
+            "nothing_fits": self.nothing_fits,
+            "headline": headline(self),
             "scenarios": [scenario.to_dict() for scenario in self.scenarios],
-            "prior_odds": dict(self.prior_odds), "cautions": list(self.cautions),
+            "prior_odds": dict(self.prior_odds),
+            "cautions": list(self.cautions),
         }
 
 

@@ -160,9 +160,7 @@ class Branch:
         values = draws | _derived(star, orbit, companion, prediction)
         return Sampled(prediction, ln_ratio, tuple(walls), np.stack(nuisances, axis=1), values)
 
-    def _masses(
-        self, draws: dict[str, FloatArray], x: FloatArray
-    ) -> tuple[SeenStarState, CompanionDraw, list[Wall]]:
+    def _masses(self, draws: dict[str, FloatArray], x: FloatArray) -> tuple[SeenStarState, CompanionDraw, list[Wall]]:
         """The seen star, then the companion that the orbit asks for, and the walls met on the way."""
         x_seen, x_mass, x_inclination = x[:, -3], x[:, -2], x[:, -1]
         velocity = self.orbit_draws.velocity(x_mass)
@@ -203,16 +201,23 @@ class Branch:
             magnitudes=seen[:, :bands] - 2.5 * np.log10(1.0 + ratio[:, :bands]),
             window_ratio=ratio[:, bands:],
             optical_ratio=ratio[:, self.context.optical_column],
-            distance_pc=distance_pc, ebv_mag=ebv_mag,
-            teff_k=star.teff_k, logg=star.logg, feh=star.feh,
+            distance_pc=distance_pc,
+            ebv_mag=ebv_mag,
+            teff_k=star.teff_k,
+            logg=star.logg,
+            feh=star.feh,
             companion_teff_k=dark if brightest is None else brightest.teff_k,
             companion_logg=dark if brightest is None else brightest.logg,
-            mass_msun=star.mass_msun, companion_mass_msun=orbit.mass_msun,
+            mass_msun=star.mass_msun,
+            companion_mass_msun=orbit.mass_msun,
             k1_km_s=kepler.semi_amplitude_km_s(star.mass_msun, orbit.mass_msun, period_d, sin_i, e),
             inclination_deg=np.degrees(np.arccos(orbit.cos_inclination)),
             photocentre_mas=kepler.photocentre_mas(
-                1000.0 / distance_pc, kepler.separation_au(star.mass_msun + orbit.mass_msun, period_d),
-                star.mass_msun, orbit.mass_msun, photocentre_ratio,
+                1000.0 / distance_pc,
+                kepler.separation_au(star.mass_msun + orbit.mass_msun, period_d),
+                star.mass_msun,
+                orbit.mass_msun,
+                photocentre_ratio,
             ),
             ordinary_seen_star=self.seen.ordinary,
         )
@@ -255,8 +260,13 @@ def _derived(
 ) -> dict[str, FloatArray]:
     """Quantities worth reporting that are not parameters."""
     values = {
-        "m1_msun": star.mass_msun, "r1_rsun": star.radius_rsun, "teff1_k": star.teff_k, "logg1": star.logg,
-        "m2_msun": orbit.mass_msun, "inclination_deg": prediction.inclination_deg, "k1_km_s": prediction.k1_km_s,
+        "m1_msun": star.mass_msun,
+        "r1_rsun": star.radius_rsun,
+        "teff1_k": star.teff_k,
+        "logg1": star.logg,
+        "m2_msun": orbit.mass_msun,
+        "inclination_deg": prediction.inclination_deg,
+        "k1_km_s": prediction.k1_km_s,
     }
     for place, component in enumerate(companion.components):
         suffix = "2" if len(companion.components) == 1 else f"2{'ab'[place]}"

@@ -51,8 +51,7 @@ class Context:
 
 def build_context(system: System) -> Context:
     """Return the context of a system: its bands, windows and range of dust decide the light engine."""
-    magnitudes = [*system.magnitudes, *system.magnitude_limits]
-    systems = {m.band: m.system for m in magnitudes}
+    systems = {m.band: m.system for m in system.magnitudes} | {m.band: m.system for m in system.magnitude_limits}
     bands = list(systems)
     photocentre = photocentre_band(system)
     if photocentre is not None and photocentre not in bands:

@@ -23,7 +23,7 @@ def to_unit(x: FloatArray) -> FloatArray:
     """Return uniform deviates (n,) in (0, 1) from standard normal ones."""
     from scipy.special import ndtr
 
-    return np.clip(ndtr(x), SMALLEST_UNIT, 1.0 - SMALLEST_UNIT)
+    return np.asarray(np.clip(ndtr(x), SMALLEST_UNIT, 1.0 - SMALLEST_UNIT))
 
 
 class Prior(Protocol):

@@ -138,9 +138,7 @@ class Giant(SeenStar):
         teff, logg = draws["teff_k"], draws["logg"]
         mass, ln_share, excess = log_uniform_below(x_mass, *GIANT_MASS_RANGE_MSUN, mass_max_msun)
         draws["mass_msun"] = mass
-        return SeenStarState(
-            teff, logg, draws["feh"], radius_from_gravity_rsun(mass, logg), mass, ln_share, excess
-        )
+        return SeenStarState(teff, logg, draws["feh"], radius_from_gravity_rsun(mass, logg), mass, ln_share, excess)
 
 
 class CoolDwarf(SeenStar):
@@ -215,8 +213,6 @@ def _torres_mass_range_msun(seen: Primary) -> tuple[float, float]:
         return 0.0, np.inf
     logg = 4.5 if seen.logg is None else max(seen.logg.value, GIANT_LOGG)
     feh = 0.0 if seen.feh is None else seen.feh.value
-    mass = float(
-        torres_mass_msun(np.array([seen.teff_k.value]), np.array([logg]), np.array([feh]))[0]
-    )
+    mass = float(torres_mass_msun(np.array([seen.teff_k.value]), np.array([logg]), np.array([feh]))[0])
     factor = 10.0 ** (2.0 * TORRES_MASS_SCATTER_DEX)
     return mass / factor, mass * factor

@@ -120,9 +120,7 @@ def evolved_star(mass_msun: ArrayLike, rise: ArrayLike, warmth: ArrayLike, feh: 
         sequence), in ln Teff; outside, ``valid`` is False
     feh : [Fe/H], -3 to 0.7; outside, ``valid`` is False
     """
-    mass, up, warm, metals = np.broadcast_arrays(
-        *(np.asarray(x, dtype=float) for x in (mass_msun, rise, warmth, feh))
-    )
+    mass, up, warm, metals = np.broadcast_arrays(*(np.asarray(x, dtype=float) for x in (mass_msun, rise, warmth, feh)))
     valid = np.ones(mass.shape, dtype=bool)
     for values, (low, high) in ((mass, MASS_RANGE_MSUN), (up, (0.0, 1.0)), (warm, (0.0, 1.0)), (metals, FEH_RANGE)):
         valid &= (values >= low) & (values <= high)

@@ -118,12 +118,17 @@ def _zero_age(mass: _Mass, metals: Metallicity) -> tuple[FloatArray, FloatArray]
     m5, m8 = mass.m3 * mass.m2, mass.m3 * mass.m3 * mass.m2
     m11, m19 = m8 * mass.m3, m8 * m8 * mass.m3
     luminosity = (c["L.alpha"] * m5 * root + c["L.beta"] * m11) / (
-        c["L.gamma"] + mass.m3 + c["L.delta"] * m5 + c["L.epsilon"] * m5 * mass.m2 + c["L.zeta"] * m8
+        c["L.gamma"]
+        + mass.m3
+        + c["L.delta"] * m5
+        + c["L.epsilon"] * m5 * mass.m2
+        + c["L.zeta"] * m8
         + c["L.eta"] * m8 * m * root
     )
     radius = (
         root * (c["R.theta"] * mass.m2 + c["R.iota"] * m5 * m)
-        + c["R.kappa"] * m11 + m19 * (c["R.lambda"] + c["R.mu"] * root)
+        + c["R.kappa"] * m11
+        + m19 * (c["R.lambda"] + c["R.mu"] * root)
     ) / (c["R.nu"] + c["R.xi"] * mass.m2 + root * (c["R.omicron"] * m8 + m8 * m8 * mass.m2 + c["R.pi"] * m19))
     return np.asarray(luminosity), np.asarray(radius)
 
@@ -238,4 +243,4 @@ def _gamma(mass: _Mass, metals: Metallicity) -> FloatArray:
     wide = a[75] > 1.0
     rise = _ramp((mass.m - 1.0) / np.where(wide, a[75] - 1.0, 1.0)) ** a[81]
     middle = small + (np.where(wide, a[80], small) - small) * rise
-    return np.maximum(0.0, middle * _ramp(1.0 - 10.0 * (mass.m - a[75])))
+    return np.asarray(np.maximum(0.0, middle * _ramp(1.0 - 10.0 * (mass.m - a[75]))))
