@@ -49,7 +49,7 @@ class Settings:
     start_points: int = 8192
     polish_starts: int = 12
     rung_points: int = 3072
-    rungs: int = 14
+    rungs: int = 40
     components: int = 8
     effective: float = 2000.0
     error: float = 0.05

@@ -23,7 +23,7 @@ class NestedEvidence(NamedTuple):
     evaluations: int
 
 
-def nested_evidence(problem: Problem, seed: int, live_points: int = 400, dlogz: float = 0.05) -> NestedEvidence:
+def nested_evidence(problem: Problem, seed: int, live_points: int = 400, walks: int = 40) -> NestedEvidence:
     """Return the evidence by static nested sampling (Skilling 2006; dynesty: Speagle 2020, MNRAS 493, 3132).
 
     One point at a time, as that sampler works. Raises ImportError, naming the extra, when dynesty is not installed.
@@ -43,8 +43,14 @@ def nested_evidence(problem: Problem, seed: int, live_points: int = 400, dlogz: 
         return value if np.isfinite(value) else IMPOSSIBLE
 
     sampler = NestedSampler(
-        ln_target, to_normal, problem.dimension, nlive=live_points, rstate=np.random.default_rng(seed), sample="rslice"
+        ln_target,
+        to_normal,
+        problem.dimension,
+        nlive=live_points,
+        rstate=np.random.default_rng(seed),
+        sample="rwalk",
+        walks=walks,
     )
-    sampler.run_nested(dlogz=dlogz, print_progress=False)
+    sampler.run_nested(dlogz=0.02, print_progress=False)
     results = sampler.results
     return NestedEvidence(float(results.logz[-1]), float(results.logzerr[-1]), int(np.sum(results.ncall)))

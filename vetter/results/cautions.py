@@ -72,7 +72,7 @@ def _about_fits(rows: Sequence[ScenarioVerdict]) -> list[str]:
         if row.best_fit is None or row.verdict == "excluded":
             continue
         if row.best_fit.at_edge:
-            names = ", ".join(row.best_fit.at_edge)
+            names = ", ".join(name.replace("_", " ") for name in row.best_fit.at_edge)
             said.append(f"{row.title}: the best fit sits on the edge of the prior of {names}.")
         ratio = row.best_fit.values["optical_light_ratio"]
         if ratio > DILUTION_FROM:

@@ -30,11 +30,16 @@ def _header(verdicts: Verdicts, width: int) -> list[str]:
     """Name, orbit, what the orbit needs, what was used and what was not given."""
     orbit = verdicts.orbit
     parts = [verdicts.system, f"P {orbit.period_d:g} d", f"e {orbit.eccentricity:g}"]
+    lines = []
     if orbit.k1_km_s is not None:
-        parts += [f"K1 {orbit.k1_km_s:g} km/s", f"mass function {orbit.mass_function_msun:.3g} Msun"]
+        parts.append(f"K1 {orbit.k1_km_s:g} km/s")
     if orbit.companion_min_msun is not None:
-        parts.append(f"companion > {orbit.companion_min_msun:.2g} Msun for a seen star of {orbit.seen_star_msun:.3g}")
-    lines = _wrapped("    ".join(parts), width, keep_spaces=True)
+        lines = _wrapped(
+            f"mass function {orbit.mass_function_msun:.3g} Msun: the companion has more than "
+            f"{orbit.companion_min_msun:.2g} Msun if the seen star has {orbit.seen_star_msun:.3g}",
+            width,
+        )
+    lines = ["    ".join(parts), *lines]
     lines += _wrapped("used: " + ", ".join(verdicts.observations_used_words), width)
     if verdicts.observations_absent:
         absent = ", ".join(name.replace("_", " ") for name in verdicts.observations_absent)
@@ -45,7 +50,7 @@ def _header(verdicts: Verdicts, width: int) -> list[str]:
 def _wide_rows(verdicts: Verdicts, width: int) -> list[str]:
     """One row per scenario; long reasons are continued under their own column."""
     heads = ("explanation", "verdict", "sigma", "companion (Msun)", "ln Z", "what carries it (sigma without it)")
-    widths = (35, 11, 6, 16, 16)
+    widths = (33, 11, 5, 15, 17)
     last = width - sum(widths) - 2 * len(widths)
     lines = [_row(heads, widths), "-" * width]
     for scenario in verdicts.scenarios:
@@ -115,9 +120,6 @@ def strongest(scenario: ScenarioVerdict) -> list[Driver]:
     return (telling or ordered[:1])[:DRIVERS_SHOWN]
 
 
-def _wrapped(text: str, width: int, indent: str = "", keep_spaces: bool = False) -> list[str]:
+def _wrapped(text: str, width: int, indent: str = "") -> list[str]:
     """Wrap a paragraph; continuation lines line up under the text after the indent."""
-    if keep_spaces and len(text) <= width:
-        return [text]
-    text = " ".join(text.split()) if not keep_spaces else text.replace("    ", "  ")
     return textwrap.wrap(text, width, initial_indent=indent, subsequent_indent=" " * len(indent))

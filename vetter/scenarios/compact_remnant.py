@@ -32,11 +32,11 @@ class WhiteDwarf(Scenario):
 
     def companion_parameters(self) -> list[Parameter]:
         """Return the effective temperature."""
-        return [Parameter("teff2_k", "K", LogUniform(4000.0, 100000.0))]
+        return [Parameter("companion_teff_k", "K", LogUniform(4000.0, 100000.0))]
 
     def companion(self, mass_msun: FloatArray, feh: FloatArray, draws: Mapping[str, FloatArray]) -> Companion:
         """Return the white dwarf of each sample, a hydrogen atmosphere."""
-        star = white_dwarf(mass_msun, draws["teff2_k"])
+        star = white_dwarf(mass_msun, draws["companion_teff_k"])
         light = Component("white_dwarf", star.teff_k, star.logg, np.zeros(mass_msun.shape), star.radius_rsun)
         return Companion((light,))
 

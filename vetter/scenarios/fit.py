@@ -42,12 +42,15 @@ class Fit:
 
     def sample(self, x: FloatArray) -> Sampled:
         """Return everything the branch says at points ``x`` (n, dimension) in normal coordinates."""
-        return self.branch.sample(x)
+        # Far out in a tail a star may have no finite size or mass; such points are impossible, not worth a warning.
+        with np.errstate(all="ignore"):
+            return self.branch.sample(x)
 
     def evaluate(self, x: FloatArray) -> Evaluation:
         """Return residuals and prior weights at points ``x`` (n, dimension)."""
         sampled = self.sample(x)
-        columns = [observation.residuals(sampled.prediction) for observation in self.observations]
+        with np.errstate(all="ignore"):
+            columns = [observation.residuals(sampled.prediction) for observation in self.observations]
         excess = np.max([wall.excess for wall in sampled.walls], axis=0)
         return Evaluation(np.concatenate(columns, axis=1), sampled.nuisances, sampled.ln_ratio, excess)
 

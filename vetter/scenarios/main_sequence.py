@@ -33,15 +33,19 @@ class MainSequenceCompanion(Scenario):
     def companion_parameters(self) -> list[Parameter]:
         """Return the age as a fraction of the main-sequence life, and the scores of the relation's scatter."""
         return [
-            Parameter("life_fraction2", "", Uniform(0.0, 1.0)),
-            score("luminosity_score2"),
-            score("radius_score2"),
+            Parameter("companion_life_fraction", "", Uniform(0.0, 1.0)),
+            score("companion_luminosity_score"),
+            score("companion_radius_score"),
         ]
 
     def companion(self, mass_msun: FloatArray, feh: FloatArray, draws: Mapping[str, FloatArray]) -> Companion:
         """Return the star of each sample; it shares the seen star's [Fe/H]."""
         star = main_sequence(
-            mass_msun, draws["life_fraction2"], feh, draws["luminosity_score2"], draws["radius_score2"]
+            mass_msun,
+            draws["companion_life_fraction"],
+            feh,
+            draws["companion_luminosity_score"],
+            draws["companion_radius_score"],
         )
         light = Component("star", star.teff_k, star.logg, feh, star.radius_rsun)
         walls = (Wall(np.where(star.valid, -1.0, 1.0), "no main-sequence star has that mass"),)
