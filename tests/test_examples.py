@@ -1,0 +1,41 @@
+"""The shipped examples give what their README promises."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+import pytest
+
+from vetter import evaluate, read_system
+
+EXAMPLES = Path(__file__).parent.parent / "examples"
+
+
+def test_dark_companion_is_a_black_hole() -> None:
+    verdicts = evaluate(read_system(EXAMPLES / "dark_companion.toml"))
+    assert not verdicts.nothing_fits
+    assert {s.name: s.verdict for s in verdicts.scenarios} == {
+        "main_sequence": "excluded",
+        "white_dwarf": "excluded",
+        "neutron_star": "excluded",
+        "black_hole": "allowed",
+    }
+    low, _, high = verdicts.scenario("black_hole").companion_mass_msun
+    assert low < 3.7 < high
+    assert "1.38 Msun at any inclination" in verdicts.scenario("white_dwarf").closed_because
+
+
+def test_hidden_star_is_an_ordinary_star() -> None:
+    verdicts = evaluate(read_system(EXAMPLES / "hidden_star.toml"))
+    assert not verdicts.nothing_fits
+    found = {s.name: s.verdict for s in verdicts.scenarios}
+    assert found["main_sequence"] == "allowed"
+    assert found["white_dwarf"] != "excluded"
+    assert found["neutron_star"] == found["black_hole"] == "excluded"
+    low, _, high = verdicts.scenario("main_sequence").companion_mass_msun
+    assert low < 0.68 < high
+
+
+@pytest.mark.parametrize("path", sorted(EXAMPLES.glob("*.toml")), ids=lambda path: path.stem)
+def test_every_example_is_in_the_readme(path: Path) -> None:
+    assert f"`{path.name}`" in (EXAMPLES / "README.md").read_text()
