@@ -31,6 +31,9 @@ FloatArray = NDArray[np.float64]
 NOT_FITTED = ("velocities", "variability", "x_ray", "imaging")
 """Tables of the system file that are read but that no observation uses yet."""
 
+EDGE_MASS = 0.002
+"""A best companion mass this close to the end of its range, as a fraction, sits on its edge."""
+
 EDGE_COORDINATE = 3.1
 """A best fit beyond this normal coordinate (outer thousandth of the prior) is said to sit on the prior's edge."""
 
@@ -178,11 +181,15 @@ def _best_fit(branch: BranchRun, context: Context) -> BestFit:
     values = {name: float(value[0]) for name, value in sampled.values.items()}
     values["optical_light_ratio"] = float(sampled.prediction.optical_ratio[0])
     magnitudes = dict(zip(context.engine.bands, sampled.prediction.magnitudes[0].tolist(), strict=True))
+    parameters = branch.fit.branch.free_parameters
     edges = [
         parameter.name
-        for parameter, x in zip(branch.fit.branch.parameters, branch.best_x, strict=True)
+        for parameter, x in zip(parameters, branch.best_x, strict=False)
         if abs(x) > EDGE_COORDINATE and parameter.guide is None and not parameter.counts
     ]
+    prior = branch.fit.branch.orbit_draws.prior
+    if not prior.low * (1.0 + EDGE_MASS) < values["m2_msun"] < prior.high * (1.0 - EDGE_MASS):
+        edges.append("companion_mass_msun")
     return BestFit(values, magnitudes, tuple(edges))
 
 

@@ -156,9 +156,10 @@ class Branch:
         ln_ratio = ln_ratio + star.ln_ratio + orbit.ln_ratio
         for wall in walls:
             ln_ratio = np.where(wall.excess > 0.0, -np.inf, ln_ratio)
-        nuisances = [draws[parameter.name] for parameter in self.parameters if parameter.counts]
+        scores = [draws[parameter.name] for parameter in self.parameters if parameter.counts]
+        nuisances = np.stack(scores, axis=1) if scores else np.zeros((len(x), 0))
         values = draws | _derived(star, orbit, companion, prediction)
-        return Sampled(prediction, ln_ratio, tuple(walls), np.stack(nuisances, axis=1), values)
+        return Sampled(prediction, ln_ratio, tuple(walls), nuisances, values)
 
     def _masses(self, draws: dict[str, FloatArray], x: FloatArray) -> tuple[SeenStarState, CompanionDraw, list[Wall]]:
         """The seen star, then the companion that the orbit asks for, and the walls met on the way."""
