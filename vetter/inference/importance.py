@@ -9,6 +9,7 @@ The numbers that are reported come from the last, fresh set of draws only, so th
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
@@ -25,6 +26,9 @@ MODE_SHARE = 0.4
 MODE_STRETCH = 4.0
 """Variance of the first draws around a polished point over its Gaussian variance: too wide is safer than too narrow."""
 
+POOLED_RUNGS = 4
+"""How many rungs shape the next proposal."""
+
 ENOUGH_SHARE = 0.1
 """Share of the draws that must be effective for a refit to be safe."""
 
@@ -39,6 +43,7 @@ class Settings:
     polish_starts : how many of them are polished into modes
     rung_points : draws per adaptation round
     rungs : most adaptation rounds
+    patience : rounds without a better proposal before the best one is taken
     components : most t components of the proposal
     effective : effective sample size to aim at
     error : largest error of ln evidence to accept
@@ -50,6 +55,7 @@ class Settings:
     polish_starts: int = 12
     rung_points: int = 3072
     rungs: int = 40
+    patience: int = 8
     components: int = 8
     effective: float = 2000.0
     error: float = 0.05
@@ -184,23 +190,45 @@ def _distinct(x: FloatArray, chi2: FloatArray, precision: FloatArray, most: int 
 def _adapt(
     problem: Problem, mixture: student.StudentMixture, settings: Settings, rng: np.random.Generator
 ) -> tuple[student.StudentMixture, int]:
-    """Refit the mixture rung by rung until it proposes well, or the rungs are used up; return the best one seen."""
-    evaluations, previous, best, best_efficiency = 0, 0.0, mixture, -1.0
-    for _ in range(settings.rungs):
+    """Refit the mixture rung by rung until it proposes well, or the rungs are used up; return the best one seen.
+
+    The last rungs are pooled under the mean of their proposals (Cornuet et al. 2012, Scand. J. Stat. 39, 798): one
+    rung alone has too few effective points to shape many components in ten dimensions.
+    """
+    evaluations, previous, best, best_efficiency, best_rung = 0, 0.0, mixture, -1.0, 0
+    rungs: list[_Rung] = []
+    for number in range(settings.rungs):
         x = mixture.draw(settings.rung_points, rng)
-        ln_weights = _evaluate(problem, x) + _ln_normal(x) - mixture.ln_density(x)
+        ln_target = _evaluate(problem, x) + _ln_normal(x)
         evaluations += x.shape[0]
-        efficiency = diagnostics.effective_sample_size(ln_weights) / x.shape[0]
+        efficiency = diagnostics.effective_sample_size(ln_target - mixture.ln_density(x)) / x.shape[0]
         if efficiency > best_efficiency:
-            best, best_efficiency = mixture, efficiency
-        if efficiency > 0.5 or 0.15 < efficiency < 1.15 * previous:
+            best, best_efficiency, best_rung = mixture, efficiency, number
+        if efficiency > 0.5 or 0.15 < efficiency < 1.15 * previous or number > best_rung + settings.patience:
             break
         previous = efficiency
-        weights = _truncated(_flattened(ln_weights))
+        rungs = [*rungs[1 - POOLED_RUNGS :], _Rung(x, ln_target, mixture)]
+        points = np.concatenate([rung.x for rung in rungs])
+        weights = _truncated(_flattened(_pooled_ln_weights(rungs, points)))
         if np.count_nonzero(weights) <= x.shape[1]:
             continue
-        mixture = student.with_wide_component(student.fit(x, weights, settings.components, rng), x, weights)
+        mixture = student.with_wide_component(student.fit(points, weights, settings.components, rng), points, weights)
     return best, evaluations
+
+
+class _Rung(NamedTuple):
+    """Points (n, d), their ln target (n,), and what proposed them."""
+
+    x: FloatArray
+    ln_target: FloatArray
+    mixture: student.StudentMixture
+
+
+def _pooled_ln_weights(rungs: list[_Rung], points: FloatArray) -> FloatArray:
+    """Ln weights of the points of all rungs together, under the mean of their proposals."""
+    ln_target = np.concatenate([rung.ln_target for rung in rungs])
+    ln_density = np.logaddexp.reduce([rung.mixture.ln_density(points) for rung in rungs]) - np.log(len(rungs))
+    return np.asarray(ln_target - ln_density)
 
 
 def _flattened(ln_weights: FloatArray) -> FloatArray:

@@ -92,9 +92,12 @@ def _about_fits(rows: Sequence[ScenarioVerdict]) -> list[str]:
 
 def _about_sampling(rows: Sequence[ScenarioVerdict]) -> list[str]:
     """Evidences that did not reach the wanted precision."""
-    return [
-        f"{row.title}: the evidence is poorly sampled (effective sample {row.diagnostics.effective_sample_size:.0f}, "
-        f"Pareto k {row.diagnostics.pareto_k:.2f}); do not quote it."
-        for row in rows
-        if row.diagnostics is not None and not row.diagnostics.converged
-    ]
+    said = []
+    for row in rows:
+        if row.diagnostics is not None and not row.diagnostics.converged:
+            k = row.diagnostics.pareto_k
+            said.append(
+                f"{row.title}: the evidence is poorly sampled (effective sample "
+                f"{row.diagnostics.effective_sample_size:.0f}, Pareto k {'unknown' if k is None else f'{k:.2f}'}); do not quote it."
+            )
+    return said

@@ -168,7 +168,7 @@ def _diagnostics(run: ScenarioRun) -> Diagnostics:
     evaluations = sum(branch.posterior.evaluations for branch in run.branches if branch.posterior is not None)
     return Diagnostics(
         round(posterior.effective_sample_size, 1),
-        round(posterior.pareto_k, 3),
+        round(posterior.pareto_k, 3) if np.isfinite(posterior.pareto_k) else None,
         evaluations,
         "adaptive importance sampling",
         posterior.converged,

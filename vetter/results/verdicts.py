@@ -23,10 +23,10 @@ class Driver:
 
 @dataclass(frozen=True)
 class Diagnostics:
-    """How far the evidence can be trusted."""
+    """How far the evidence can be trusted; ``pareto_k`` is None where too few weights are left to tell."""
 
     effective_sample_size: float
-    pareto_k: float
+    pareto_k: float | None
     evaluations: int
     method: str
     converged: bool
