@@ -55,7 +55,7 @@ class Settings:
     polish_starts: int = 12
     rung_points: int = 3072
     rungs: int = 40
-    patience: int = 8
+    patience: int = 15
     components: int = 8
     effective: float = 2000.0
     error: float = 0.05

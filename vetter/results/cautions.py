@@ -96,8 +96,9 @@ def _about_sampling(rows: Sequence[ScenarioVerdict]) -> list[str]:
     for row in rows:
         if row.diagnostics is not None and not row.diagnostics.converged:
             k = row.diagnostics.pareto_k
+            shape = "unknown" if k is None else f"{k:.2f}"
             said.append(
                 f"{row.title}: the evidence is poorly sampled (effective sample "
-                f"{row.diagnostics.effective_sample_size:.0f}, Pareto k {'unknown' if k is None else f'{k:.2f}'}); do not quote it."
+                f"{row.diagnostics.effective_sample_size:.0f}, Pareto k {shape}); do not quote it."
             )
     return said

@@ -10,7 +10,7 @@ from __future__ import annotations
 import importlib
 import pkgutil
 from abc import ABC, abstractmethod
-from collections.abc import Mapping
+from collections.abc import Mapping, MutableMapping
 from dataclasses import dataclass
 from functools import cached_property
 from typing import ClassVar, NamedTuple
@@ -90,6 +90,12 @@ class Scenario(ABC):
     def companion(self, mass_msun: FloatArray, feh: FloatArray, draws: Mapping[str, FloatArray]) -> Companion:
         """Return the companions of given mass (n,) and [Fe/H] (n,) with the drawn parameters."""
 
+    def orbit_walls(
+        self, mass_msun: FloatArray, star: SeenStarState, draws: MutableMapping[str, FloatArray], context: Context
+    ) -> tuple[Wall, ...]:
+        """Return walls that need the outer orbit, for companions of ``mass_msun`` (n,); none by default."""
+        return ()
+
     def branches(self, context: Context) -> list[Branch]:
         """Return the discrete variants that are run separately; their evidences are averaged."""
         return [Branch(self, seen, context) for seen in ordinary_seen_stars(context.system)]
@@ -153,6 +159,7 @@ class Branch:
         companion = self.scenario.companion(orbit.mass_msun, star.feh, draws)
         prediction = self._predict(draws, star, orbit, companion)
         walls += [*self._walls(star, orbit, companion, prediction), *companion.walls]
+        walls += self.scenario.orbit_walls(orbit.mass_msun, star, draws, self.context)
         ln_ratio = ln_ratio + star.ln_ratio + orbit.ln_ratio
         for wall in walls:
             ln_ratio = np.where(wall.excess > 0.0, -np.inf, ln_ratio)

@@ -36,6 +36,11 @@ GIANT_MASS_RANGE_MSUN = (0.7, 16.0)
 DWARF_MASS_RANGE_MSUN = (0.3, 150.0)
 """Outside this the relation, stretched by its scatter, says nothing."""
 
+STRIPPED_MASS_LOW_MSUN = 0.1
+
+STRIPPED_MASS_SHARE = 0.8
+"""A stripped star has at most this fraction of the mass that an ordinary star of its Teff and log g has."""
+
 COOL_DWARF_MASS_RANGE_MSUN = (0.08, 0.8)
 
 COOL_DWARF_MASS_MSUN = 0.6
@@ -65,8 +70,8 @@ class SeenStar(ABC):
     than the scenario's heaviest companion: a posterior that leans on that wall could not be sampled.
     """
 
-    name: ClassVar[str]
-    words: ClassVar[str]
+    name: str
+    words: str
     ordinary: ClassVar[bool] = True
 
     @abstractmethod
@@ -169,8 +174,52 @@ class CoolDwarf(SeenStar):
         return SeenStarState(star.teff_k, star.logg, feh, star.radius_rsun, mass, ln_share, excess)
 
 
+class StrippedStar(SeenStar):
+    """A star that has lost its envelope: far lighter than an ordinary star that looks the same.
+
+    Its mass reaches up to ``STRIPPED_MASS_SHARE`` of the ordinary one (giants: to the lightest ordinary giant), so that
+    this explanation neither contains the ordinary ones nor leaves a gap between them.
+    """
+
+    ordinary = False
+
+    def __init__(self, giant: bool) -> None:
+        """Make the stripped counterpart of an ordinary giant, or of an ordinary dwarf or subgiant."""
+        self.giant = giant
+        self.name = "stripped giant" if giant else "stripped star"
+        self.words = f"a stripped star of {STRIPPED_MASS_LOW_MSUN:g} Msun to " + (
+            f"{GIANT_MASS_RANGE_MSUN[0]:g} Msun" if giant else f"{STRIPPED_MASS_SHARE:g} of the mass it looks to have"
+        )
+
+    def parameters(self, seen: Primary) -> list[Parameter]:
+        """Return Teff, log g and [Fe/H]."""
+        return spectrum_parameters(seen)
+
+    @property
+    def mass_parameter(self) -> Parameter:
+        """The mass itself; the upper end of its range moves with the spectrum."""
+        return Parameter("mass_msun", "Msun", LogUniform(STRIPPED_MASS_LOW_MSUN, self._printed_high))
+
+    @property
+    def _printed_high(self) -> float:
+        return GIANT_MASS_RANGE_MSUN[0] if self.giant else STRIPPED_MASS_SHARE * DWARF_MASS_RANGE_MSUN[1]
+
+    def star(
+        self, draws: MutableMapping[str, FloatArray], x_mass: FloatArray, mass_max_msun: FloatArray
+    ) -> SeenStarState:
+        """Return the star; only g R^2 / G ties its mass and radius."""
+        teff, logg, feh = draws["teff_k"], draws["logg"], draws["feh"]
+        if self.giant:
+            high = np.full(teff.shape, GIANT_MASS_RANGE_MSUN[0])
+        else:
+            high = np.maximum(STRIPPED_MASS_SHARE * torres_mass_msun(teff, logg, feh), 1.01 * STRIPPED_MASS_LOW_MSUN)
+        mass, ln_share, excess = log_uniform_below(x_mass, STRIPPED_MASS_LOW_MSUN, high, mass_max_msun)
+        draws["mass_msun"] = mass
+        return SeenStarState(teff, logg, feh, radius_from_gravity_rsun(mass, logg), mass, ln_share, excess)
+
+
 def log_uniform_below(
-    x: FloatArray, low: float, high: float, limit: FloatArray
+    x: FloatArray, low: float, high: float | FloatArray, limit: FloatArray
 ) -> tuple[FloatArray, FloatArray, FloatArray]:
     """Return log-uniform values (n,) between low and min(high, limit), ln of the share of the prior, and the excess."""
     top = np.clip(limit, low * (1.0 + 1e-6), high)
@@ -205,6 +254,17 @@ def ordinary_seen_stars(system: System) -> list[SeenStar]:
     if giant:
         kinds.append(Giant())
     return kinds
+
+
+def stripped_seen_stars(system: System) -> list[SeenStar]:
+    """Return the stripped counterparts of the ordinary kinds that the measured log g leaves open."""
+    kinds = ordinary_seen_stars(system)
+    stripped: list[SeenStar] = []
+    if any(not isinstance(kind, Giant) for kind in kinds):
+        stripped.append(StrippedStar(giant=False))
+    if any(isinstance(kind, Giant) for kind in kinds):
+        stripped.append(StrippedStar(giant=True))
+    return stripped
 
 
 def _torres_mass_range_msun(seen: Primary) -> tuple[float, float]:
