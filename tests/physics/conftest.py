@@ -8,7 +8,7 @@ from typing import NamedTuple
 import numpy as np
 import pytest
 
-DIRECTIONS = 60
+DIRECTIONS = 64
 
 
 class RocheLight(NamedTuple):
@@ -20,7 +20,7 @@ class RocheLight(NamedTuple):
 
 
 def _potential(q: float, x: np.ndarray, y: np.ndarray, z: np.ndarray) -> np.ndarray:
-    """Roche potential of the star (mass 1) at the origin with a companion of mass q at x = 1, turning with the orbit."""
+    """Roche potential of the star (mass 1) at the origin, companion of mass q at x = 1, turning with the orbit."""
     near, far = np.sqrt(x * x + y * y + z * z), np.sqrt((x - 1.0) ** 2 + y * y + z * z)
     return -1.0 / near - q / far - 0.5 * (1.0 + q) * ((x - q / (1.0 + q)) ** 2 + y * y)
 
@@ -39,11 +39,11 @@ def _surface(q: float, level: float, reach: float) -> tuple[np.ndarray, np.ndarr
     """Return unit directions (n, 3), their weights (n,) and the radius (n,) at which the potential is ``level``."""
     cosines, weights = np.polynomial.legendre.leggauss(DIRECTIONS)
     phi = (np.arange(2 * DIRECTIONS) + 0.5) * np.pi / DIRECTIONS
-    # The polar axis points at the companion, where the surface is steepest.
+    # The polar axis is that of the orbit and the phases are steps of the grid: the error of the sum does not vary.
     c, p = (grid.ravel() for grid in np.meshgrid(cosines, phi, indexing="ij"))
     solid = np.repeat(weights, phi.size) * np.pi / DIRECTIONS
     s = np.sqrt(1.0 - c * c)
-    way = np.stack([c, s * np.cos(p), s * np.sin(p)], axis=1)
+    way = np.stack([s * np.cos(p), s * np.sin(p), c], axis=1)
     low, high = np.full(c.shape, 1e-4), np.full(c.shape, reach)
     for _ in range(60):
         middle = 0.5 * (low + high)
@@ -61,6 +61,13 @@ def _lobe(q: float) -> tuple[float, float]:
 
 def _volume_radius(solid: np.ndarray, radius: np.ndarray) -> float:
     return float(np.cbrt(np.sum(solid * radius**3) / (4.0 * np.pi)))
+
+
+def _second_harmonic(cosine: np.ndarray, bright: np.ndarray, limb: float, phase: np.ndarray) -> float:
+    """Return minus the relative amplitude of cos(2 phase) in the light of elements (n,) seen at cosines (n, phases)."""
+    mu = np.maximum(cosine, 0.0)
+    flux = np.sum(bright[:, None] * mu * (1.0 - limb + limb * mu), axis=0)
+    return float(-2.0 * np.mean(flux * np.cos(2.0 * phase)) / np.mean(flux))
 
 
 @pytest.fixture(scope="session")
@@ -92,14 +99,10 @@ def roche_light() -> Callable[..., RocheLight]:
         area = solid * radius**2 / np.sum(normal * way, axis=1)
         bright = gravity_here**gravity * area
         phase = np.arange(16) * 2.0 * np.pi / 16
-        sight = np.stack(
-            [np.cos(phase) * np.sin(inclination), np.sin(phase) * np.sin(inclination), 0.0 * phase + np.cos(inclination)],
-            axis=1,
-        )
-        mu = np.maximum(normal @ sight.T, 0.0)
-        flux = np.sum(bright[:, None] * mu * (1.0 - limb + limb * mu), axis=0)
-        second = 2.0 * np.mean(flux * np.cos(2.0 * phase)) / np.mean(flux)
+        slant, high = np.sin(inclination), np.cos(inclination)
+        sight = np.stack([np.cos(phase) * slant, np.sin(phase) * slant, np.full(phase.size, high)], axis=1)
+        seen = _second_harmonic(normal @ sight.T, bright, limb, phase)
         size = _volume_radius(solid, radius)
-        return RocheLight(size / _volume_radius(lobe_solid, lobe_surface), size, float(-second))
+        return RocheLight(size / _volume_radius(lobe_solid, lobe_surface), size, seen)
 
     return light

@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING, ClassVar, Self
 import numpy as np
 from numpy.typing import NDArray
 
+from vetter.observations.astrometry import velocity_cautions
 from vetter.observations.base import GaussianObservation, register
 from vetter.observations.prediction import Prediction
 from vetter.system.model import System
@@ -34,3 +35,7 @@ class PhotocentreObservation(GaussianObservation):
     def predicted_value(self, predicted: Prediction) -> NDArray[np.float64]:
         """Return the photocentre's semi-major axis in mas (n,)."""
         return predicted.photocentre_mas
+
+    def cautions(self, system: System) -> list[str]:
+        """Return by how much the velocities disagree with this orbit, where they do."""
+        return velocity_cautions(system)
