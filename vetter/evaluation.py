@@ -95,7 +95,7 @@ def evaluate(
     settings : precision of the sampler
     progress : called with the title of each scenario before it runs
 
-    Raises InputError for an unknown scenario, or an orbit that gives neither K1 nor a photocentre.
+    Raises InputError for an unknown scenario, or when nothing weighs the companion.
     """
     from vetter.results.compare import compare
 
@@ -109,22 +109,16 @@ def evaluate(
 
 
 def prepare(system: System) -> tuple[Context, list[Observation]]:
-    """Return the context and the observations of a system. Raises InputError when nothing weighs the companion."""
-    from vetter.errors import InputError
+    """Return the context and the observations of a system; K1 comes from its epoch velocities where it was not given.
+
+    Raises InputError when nothing weighs the companion.
+    """
     from vetter.observations.base import registered
+    from vetter.observations.velocities import orbit_with_velocities
     from vetter.scenarios.context import build_context
 
-    orbit = system.orbit
-    if orbit.k1_km_s is None and orbit.photocentre_mas is None and orbit.thiele_innes is None:
-        raise InputError.single(
-            system.source,
-            "orbit",
-            None,
-            "k1_km_s, photocentre_mas or thiele_innes",
-            "Epoch velocities alone are read but not fitted yet: give the semi-amplitude of your own fit as k1_km_s.",
-        )
-    context = build_context(system)
-    made = [kind.from_system(system, context.engine) for kind in registered()]
+    context = build_context(orbit_with_velocities(system))
+    made = [kind.from_system(context.system, context.engine) for kind in registered()]
     return context, [observation for observation in made if observation is not None]
 
 

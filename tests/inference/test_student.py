@@ -34,13 +34,21 @@ def test_draws_follow_the_density() -> None:
 
 
 def test_fit_recovers_components() -> None:
+    """The fit sees MOST_POINTS of the points: tolerances are four standard errors for the points in each component."""
     rng = np.random.default_rng(2)
     x = _mixture().draw(20000, rng)
     fitted = student.fit(x, np.full(len(x), 1.0 / len(x)), 2, rng)
     order = np.argsort(-fitted.share)
-    np.testing.assert_allclose(fitted.share[order], [0.7, 0.3], atol=0.03)
-    np.testing.assert_allclose(fitted.mean[order], [[0.0, 0.0], [5.0, -3.0]], atol=0.1)
-    np.testing.assert_allclose(fitted.factor[order][0] @ fitted.factor[order][0].T, [[1.0, 0.3], [0.3, 0.5]], atol=0.1)
+    seen = student.MOST_POINTS * np.array([0.7, 0.3])
+    np.testing.assert_allclose(fitted.share[order], [0.7, 0.3], atol=4.0 * np.sqrt(0.21 / student.MOST_POINTS))
+    scale = [np.array([[1.0, 0.3], [0.3, 0.5]]), np.array([[0.2, 0.0], [0.0, 2.0]])]
+    for place, (count, truth, centre) in enumerate(zip(seen, scale, [[0.0, 0.0], [5.0, -3.0]], strict=True)):
+        # The variance of a t density with five degrees of freedom is 5/3 of its scale, its kurtosis excess is 6.
+        error = 4.0 * np.sqrt(np.diagonal(truth) * 5.0 / 3.0 / count)
+        assert np.all(np.abs(fitted.mean[order[place]] - centre) < error)
+        found = fitted.factor[order[place]] @ fitted.factor[order[place]].T
+        largest = np.sqrt(np.outer(np.diagonal(truth), np.diagonal(truth)))
+        assert np.all(np.abs(found - truth) < 4.0 * largest * np.sqrt(8.0 / count))
 
 
 def test_wide_component_is_twice_as_wide() -> None:

@@ -14,7 +14,7 @@ import pytest
 from vetter import read_system
 from vetter.evaluation import chosen_scenarios, prepare
 from vetter.inference.importance import Settings, sample
-from vetter.inference.nested import nested_evidence
+from vetter.inference.nested import Frame, nested_evidence, posterior_frame
 from vetter.inference.problem import Evaluation, open_ground
 from vetter.scenarios.fit import Fit
 
@@ -42,6 +42,12 @@ def test_nested_sampling_knows_an_elementary_evidence() -> None:
     assert found.ln_evidence == pytest.approx(truth, abs=4.0 * found.ln_evidence_error)
 
 
+def test_the_frame_does_not_change_the_answer() -> None:
+    truth = 3 * (np.log(0.2 / np.sqrt(1.04)) - 0.5 * 0.25 / 1.04)
+    found = nested_evidence(_Gaussian(), seed=2, frame=Frame(np.full(3, 0.3), np.full(3, 0.7)), live_points=150)
+    assert found.ln_evidence == pytest.approx(truth, abs=4.0 * found.ln_evidence_error)
+
+
 @pytest.mark.slow
 @pytest.mark.parametrize(("system", "scenario"), PAIRS)
 def test_evidence_agrees(system: str, scenario: str) -> None:
@@ -55,6 +61,6 @@ def test_evidence_agrees(system: str, scenario: str) -> None:
             # Every point is walled off: the evidence is zero for either sampler.
             assert not np.isfinite(fit.evaluate(np.random.default_rng(1).normal(size=(20000, fit.dimension)))[2]).any()
             continue
-        theirs = nested_evidence(fit, seed=0)
+        theirs = nested_evidence(fit, seed=0, frame=posterior_frame(ours.x, ours.weights))
         error = np.hypot(ours.ln_evidence_error, theirs.ln_evidence_error)
         assert ours.ln_evidence == pytest.approx(theirs.ln_evidence, abs=3.0 * error)

@@ -72,7 +72,7 @@ BREACHES = [
     ("ebv_mag = 0.12\n", "ebv_mag = 0.12\nebv_max_mag = 1\n", "extinction", "", "alone", "Remove one"),
     ("ebv_mag = 0.12\nebv_error_mag = 0.02\n", "", "extinction", "", "either", "Add one"),
     ("r_v = 3.1", "r_v = 1.9", "extinction.r_v", "1.9", "at least 2", "Check the value"),
-    ("r_v = 3.1", "r_v = 6.6", "extinction.r_v", "6.6", "at most 6.5", "Check the value"),
+    ("r_v = 3.1", "r_v = 6.6", "extinction.r_v", "6.6", "at most 5.6", "Check the value"),
     # The seen star.
     ("teff_k = 5960", "teff_k = 499", "primary.teff_k", "499", "at least 500", "in K"),
     ("teff_k = 5960", "teff_k = 500001", "primary.teff_k", "500001", "at most 500000", "in K"),

@@ -15,6 +15,21 @@ IMPOSSIBLE = -1e300
 """What stands for ln 0: the sampler cannot take minus infinity everywhere."""
 
 
+FRAME_STRETCH = 4.0
+"""The frame reaches this many standard deviations of the expected posterior: wide enough to hold all that matters."""
+
+
+class Frame(NamedTuple):
+    """Where nested sampling looks first: centre and width (d,) of a Gaussian that its unit cube is mapped to.
+
+    It changes the work, not the answer, for the ratio to the prior is carried along. The prior itself is the default;
+    an excluded scenario's posterior lies so far out in it that a unit cube has no digits left there.
+    """
+
+    centre: FloatArray
+    width: FloatArray
+
+
 class NestedEvidence(NamedTuple):
     """Logarithm of the evidence, its error, and how often the likelihood was evaluated."""
 
@@ -23,7 +38,15 @@ class NestedEvidence(NamedTuple):
     evaluations: int
 
 
-def nested_evidence(problem: Problem, seed: int, live_points: int = 400, walks: int = 40) -> NestedEvidence:
+def posterior_frame(x: FloatArray, weights: FloatArray) -> Frame:
+    """Return a frame around weighted points (n, d) with weights (n,) that sum to one."""
+    centre = weights @ x
+    return Frame(centre, FRAME_STRETCH * np.sqrt(weights @ (x - centre) ** 2) + 1e-12)
+
+
+def nested_evidence(
+    problem: Problem, seed: int, frame: Frame | None = None, live_points: int = 400, walks: int = 40
+) -> NestedEvidence:
     """Return the evidence by static nested sampling (Skilling 2006; dynesty: Speagle 2020, MNRAS 493, 3132).
 
     One point at a time, as that sampler works. Raises ImportError, naming the extra, when dynesty is not installed.
@@ -34,12 +57,18 @@ def nested_evidence(problem: Problem, seed: int, live_points: int = 400, walks: 
         raise ImportError("nested sampling needs dynesty: install companion-vetter[reference]") from error
     from scipy.special import ndtri
 
+    chosen = frame or Frame(np.zeros(problem.dimension), np.ones(problem.dimension))
+
     def to_normal(unit: FloatArray) -> FloatArray:
-        return np.asarray(np.clip(ndtri(unit), -LARGEST_COORDINATE, LARGEST_COORDINATE))
+        return np.asarray(chosen.centre + chosen.width * ndtri(unit))
 
     def ln_target(x: FloatArray) -> float:
+        if np.abs(x).max() > LARGEST_COORDINATE:
+            return IMPOSSIBLE
         found = problem.evaluate(x[None])
-        value = float((ln_likelihood(problem, found.residuals) + found.ln_prior_ratio)[0])
+        score = (x - chosen.centre) / chosen.width
+        ln_prior_over_frame = 0.5 * np.sum(score**2 - x**2) + np.sum(np.log(chosen.width))
+        value = float((ln_likelihood(problem, found.residuals) + found.ln_prior_ratio)[0] + ln_prior_over_frame)
         return value if np.isfinite(value) else IMPOSSIBLE
 
     sampler = NestedSampler(

@@ -67,19 +67,24 @@ def _about_input(context: Context) -> list[str]:
 
 def _about_fits(rows: Sequence[ScenarioVerdict]) -> list[str]:
     """Best fits on the edge of a prior, and spectra that a second star would have blended."""
-    said = []
+    edges, blended = [], []
     for row in rows:
         if row.best_fit is None or row.verdict == "excluded":
             continue
         if row.best_fit.at_edge:
             names = ", ".join(name.replace("_", " ") for name in row.best_fit.at_edge)
-            said.append(f"{row.title}: the best fit sits on the edge of the prior of {names}.")
+            edges.append(f"{row.title.lower()} ({names})")
         ratio = row.best_fit.values["optical_light_ratio"]
         if ratio > DILUTION_FROM:
-            said.append(
-                f"{row.title}: the companion would give {100 * ratio:.0f} % as much optical light as the seen star, so "
-                "a spectrum analysed as one star may be off; its errors were enlarged for this case."
-            )
+            blended.append(f"{row.title.lower()} ({100 * ratio:.0f} %)")
+    said = []
+    if edges:
+        said.append(f"The best fit sits on the edge of a prior for: {'; '.join(edges)}.")
+    if blended:
+        said.append(
+            "Where the companion would add more than a tenth of the seen star's optical light, a spectrum analysed as "
+            f"one star may be off, and its errors were enlarged: {'; '.join(blended)}."
+        )
     giants = [row for row in rows if row.best_fit is not None and row.seen_star.startswith("a giant")]
     if giants:
         masses = ", ".join(f"{r.best_fit.values['m1_msun']:.2g} ({r.title.lower()})" for r in giants if r.best_fit)
@@ -92,13 +97,11 @@ def _about_fits(rows: Sequence[ScenarioVerdict]) -> list[str]:
 
 def _about_sampling(rows: Sequence[ScenarioVerdict]) -> list[str]:
     """Evidences that did not reach the wanted precision."""
-    said = []
+    poor = []
     for row in rows:
         if row.diagnostics is not None and not row.diagnostics.converged:
             k = row.diagnostics.pareto_k
             shape = "unknown" if k is None else f"{k:.2f}"
-            said.append(
-                f"{row.title}: the evidence is poorly sampled (effective sample "
-                f"{row.diagnostics.effective_sample_size:.0f}, Pareto k {shape}); do not quote it."
-            )
-    return said
+            effective = row.diagnostics.effective_sample_size
+            poor.append(f"{row.title.lower()} (effective sample {effective:.0f}, Pareto k {shape})")
+    return [f"The evidence is poorly sampled and not to be quoted for: {'; '.join(poor)}."] if poor else []

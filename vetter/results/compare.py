@@ -28,7 +28,7 @@ if TYPE_CHECKING:
 
 FloatArray = NDArray[np.float64]
 
-NOT_FITTED = ("velocities", "variability", "x_ray", "imaging")
+NOT_FITTED = ("variability", "x_ray", "imaging")
 """Tables of the system file that are read but that no observation uses yet."""
 
 EDGE_MASS = 0.002

@@ -11,6 +11,7 @@ from numpy.typing import NDArray
 from vetter.light.engine import Component
 from vetter.observations.astrometry import measured_inclination
 from vetter.observations.orbit import k1_error_km_s
+from vetter.observations.velocities import orbit_with_velocities
 from vetter.physics import kepler, roche
 from vetter.scenarios.context import build_context
 from vetter.scenarios.priors import LogUniform
@@ -34,6 +35,7 @@ def inspect(system: System, seed: int = 0) -> dict[str, Any]:
     mass, and ``added_light``: band -> flux of a main-sequence star of that mass over the seen star's (half way through
     its life; null where no such star exists). Quantities that need K1 are null when it was not measured.
     """
+    system = orbit_with_velocities(system)
     rng = np.random.default_rng(seed)
     star, words = _seen_star(system, rng)
     orbit = system.orbit

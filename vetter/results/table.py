@@ -49,8 +49,8 @@ def _header(verdicts: Verdicts, width: int) -> list[str]:
 
 def _wide_rows(verdicts: Verdicts, width: int) -> list[str]:
     """One row per scenario; long reasons are continued under their own column."""
-    heads = ("explanation", "verdict", "sigma", "companion (Msun)", "ln Z", "what carries it (sigma without it)")
-    widths = (33, 11, 5, 15, 17)
+    heads = ("explanation", "verdict", "sigma", "companion (Msun)", "ln Z", "carried by (sigma without)")
+    widths = (36, 11, 5, 15, 17)
     last = width - sum(widths) - 2 * len(widths)
     lines = [_row(heads, widths), "-" * width]
     for scenario in verdicts.scenarios:
@@ -107,6 +107,8 @@ def _reason(scenario: ScenarioVerdict) -> str:
     """The wall that closes a scenario, or the observations that carry an exclusion, weightiest first."""
     if scenario.closed_because is not None:
         return scenario.closed_because
+    if scenario.verdict == "allowed" and scenario.name == "compact_pair":
+        return "these data cannot tell it from one dark body"
     if scenario.verdict == "allowed" or not scenario.driven_by:
         return ""
     return ", ".join(f"{driver.label} ({driver.sigma_without:.1f})" for driver in strongest(scenario))

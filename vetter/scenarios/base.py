@@ -62,6 +62,15 @@ class Companion:
     walls: tuple[Wall, ...] = ()
 
 
+class OuterOrbit(NamedTuple):
+    """The measured orbit of each sample: masses (n,) in Msun, period in days, eccentricity."""
+
+    mass_msun: FloatArray
+    companion_mass_msun: FloatArray
+    period_d: float
+    eccentricity: float
+
+
 class Scenario(ABC):
     """One explanation of the unseen mass.
 
@@ -91,9 +100,9 @@ class Scenario(ABC):
         """Return the companions of given mass (n,) and [Fe/H] (n,) with the drawn parameters."""
 
     def orbit_walls(
-        self, mass_msun: FloatArray, star: SeenStarState, draws: MutableMapping[str, FloatArray], context: Context
+        self, companion: Companion, outer: OuterOrbit, draws: MutableMapping[str, FloatArray]
     ) -> tuple[Wall, ...]:
-        """Return walls that need the outer orbit, for companions of ``mass_msun`` (n,); none by default."""
+        """Return walls that need the outer orbit; none by default. Derived quantities may be added to ``draws``."""
         return ()
 
     def branches(self, context: Context) -> list[Branch]:
@@ -159,7 +168,7 @@ class Branch:
         companion = self.scenario.companion(orbit.mass_msun, star.feh, draws)
         prediction = self._predict(draws, star, orbit, companion)
         walls += [*self._walls(star, orbit, companion, prediction), *companion.walls]
-        walls += self.scenario.orbit_walls(orbit.mass_msun, star, draws, self.context)
+        walls += self.scenario.orbit_walls(companion, self._outer_orbit(star, orbit), draws)
         ln_ratio = ln_ratio + star.ln_ratio + orbit.ln_ratio
         for wall in walls:
             ln_ratio = np.where(wall.excess > 0.0, -np.inf, ln_ratio)
@@ -167,6 +176,10 @@ class Branch:
         nuisances = np.stack(scores, axis=1) if scores else np.zeros((len(x), 0))
         values = draws | _derived(star, orbit, companion, prediction)
         return Sampled(prediction, ln_ratio, tuple(walls), nuisances, values)
+
+    def _outer_orbit(self, star: SeenStarState, orbit: CompanionDraw) -> OuterOrbit:
+        measured = self.context.system.orbit
+        return OuterOrbit(star.mass_msun, orbit.mass_msun, measured.period_d.value, measured.eccentricity.value)
 
     def _masses(self, draws: dict[str, FloatArray], x: FloatArray) -> tuple[SeenStarState, CompanionDraw, list[Wall]]:
         """The seen star, then the companion that the orbit asks for, and the walls met on the way."""

@@ -64,7 +64,7 @@ EXTINCTION: Final = Table(
     (
         measured("ebv_mag", "ebv_error_mag", Number(0.0, 10.0, "mag"), "E(B-V)"),
         Key("ebv_max_mag", _above_zero(10.0, "mag"), "upper bound of a flat prior on E(B-V)"),
-        Key("r_v", Number(2.0, 6.5), "A(V) / E(B-V); 3.1 when not given"),
+        Key("r_v", Number(2.3, 5.6), "A(V) / E(B-V); 3.1 when not given"),
     ),
 )
 PRIMARY: Final = Table(
