@@ -8,8 +8,9 @@ from pathlib import Path
 
 from .recipes import extinction
 from .recipes.atmospheres import as_arrays, blue_corrected, build_atmospheres, extended
-from .recipes.cool_correction import cool_corrected
+from .recipes.cool_correction import cool_corrected, without_kinks
 from .recipes.dwarf_sequence import build_dwarf_sequence
+from .recipes.metallicity import build_metallicity, build_solar
 from .recipes.model_error import Photometer, build_model_error
 from .recipes.passbands import build_passbands, read_curves
 from .recipes.sources import Sources, file_sha256
@@ -34,11 +35,12 @@ def build(archives: Path, out: Path) -> None:
     write_json(out / "passbands.json", entries)
     white_dwarfs = build_white_dwarfs(sources)
     write_npz(out / "white_dwarfs.npz", white_dwarfs)
+    write_npz(out / "metallicity.npz", build_metallicity(sources))
     sequence = build_dwarf_sequence(sources)
     (out / "dwarf_sequence.csv").write_text(sequence, encoding="utf-8")
     extinction.main(out)
     table = extended(
-        cool_corrected(plain, arrays["weights"], entries, sequence),
+        without_kinks(cool_corrected(plain, arrays["weights"], entries, sequence)),
         white_dwarfs,
         {entry["id"]: entry["pivot_angstrom"] for entry in entries},
     )
@@ -66,13 +68,15 @@ def main() -> int:
     parser = argparse.ArgumentParser(description=__doc__)
     parser.add_argument("archives", type=Path, help="folder with the package archives")
     parser.add_argument("--out", type=Path, default=Path(__file__).parent, help="where the tables go")
-    parser.add_argument("--standard-stars", type=Path, help="also write the spectra that the tests use to this file")
+    parser.add_argument("--test-data", type=Path, help="also write the data of tests/outside into this folder")
     options = parser.parse_args()
     build(options.archives, options.out)
     if (options.out / "README.md").is_file():
         write_checksums(options.out)
-    if options.standard_stars:
-        write_npz(options.standard_stars, build_standard_stars(Sources(options.archives)))
+    if options.test_data:
+        sources = Sources(options.archives)
+        write_npz(options.test_data / "standard_stars.npz", build_standard_stars(sources))
+        write_npz(options.test_data / "gaia_grid.npz", build_solar(sources))
     return 0
 
 

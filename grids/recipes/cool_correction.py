@@ -35,6 +35,8 @@ R_FROM_K = 2700.0
 BEND_MAG = 0.15  # one-sigma second difference of the curve between knots
 SIZE_MAG = np.where(KNOTS_ANGSTROM < 60000, 1.0, 0.03)  # one-sigma size of the curve; small where nothing measures it
 ROUNDS = 5
+KINKED_K = (2350.0, 3000.0)  # rows between the templates of VB 8 and LP 791-18
+KINK_SHARE, KINK_ROUNDS = 0.5, 2
 
 
 def smoothed_colours(csv_text: str, teff_k: Array) -> dict[str, Array]:
@@ -138,4 +140,24 @@ def cool_corrected(
             if share > 0:
                 shape = np.exp(table.ln_flux[i, j] - 0.4 * np.log(10) * share * curve_mag)
                 out[i, j] = np.log(normalised(nodes, shape, float(table.teff_k[i])))
+    return replace(table, ln_flux=out)
+
+
+def without_kinks(table: Atmospheres) -> Atmospheres:
+    """Return the table with the run of the coolest dwarfs in temperature smoothed.
+
+    Two templates of different stars make kinks of up to 0.06 mag in r and g between 2400 and 2950 K. Each row there is
+    drawn half-way, twice, towards the cubic in ln Teff through the two rows on either side, and scaled to sigma Teff^4.
+    """
+    ln_teff, out = np.log(table.teff_k), table.ln_flux.copy()
+    rows = np.flatnonzero((table.teff_k > KINKED_K[0]) & (table.teff_k < KINKED_K[1]))
+    dwarfs = np.flatnonzero(table.logg > LOGG_WEIGHT[0][0])
+    others = np.array([-2, -1, 1, 2])
+    for _ in range(KINK_ROUNDS):
+        before = out.copy()
+        for i in rows:
+            to_cubic = np.linalg.inv(np.vander(ln_teff[i + others] - ln_teff[i], 4))[-1]
+            for j in dwarfs:
+                drawn = (1 - KINK_SHARE) * before[i, j] + KINK_SHARE * (to_cubic @ before[i + others, j])
+                out[i, j] = np.log(normalised(table.wavelength_angstrom, np.exp(drawn), float(table.teff_k[i])))
     return replace(table, ln_flux=out)

@@ -1,8 +1,9 @@
 """One-sigma error of a synthetic magnitude per band and temperature, measured on the mean dwarf sequence and the Sun.
 
-A magnitude's error is the root mean square difference between our tables and the mean dwarf sequence within a Gaussian
-window of temperature; a band the sequence does not have takes the difference from the CALSPEC spectra of solar-type
-stars; bands that neither covers take the range of errors found when the recipe was first tried.
+A magnitude's error is the larger of two: the root mean square difference of our tables from the mean dwarf sequence
+within a Gaussian window of temperature, and the largest difference, relative to V, from the CALSPEC spectra of dwarfs
+of nearly solar metallicity within 8 % in temperature, at their published Teff, log g and dust. Bands that neither
+covers take the range of errors found when the recipe was first tried.
 """
 
 from __future__ import annotations
@@ -12,11 +13,13 @@ from typing import Any
 
 import numpy as np
 
-from .blue_correction import STARS, interpolate
+from .blue_correction import interpolate
+from .extinction import dust_columns
 from .passbands import Curve, hat_weights
 from .sequence import CHAINS, chain_minus, sequence_stars
-from .sources import Sources, fits_columns
+from .sources import Sources
 from .spectra import Array
+from .standard_stars import STANDARDS, Standard, standard_spectrum
 from .write import rounded
 
 NODES_K = np.array(
@@ -51,7 +54,12 @@ NODES_K = np.array(
 )
 FLOOR_MAG = 0.01
 WINDOW_LN_TEFF = ((8000.0, 14000.0), (0.06, 0.20))  # the sequence has few rows among hot stars
-STANDARDS_FLOOR_MAG = 0.02  # the same three stars shaped the blue correction, so alone they flatter
+STANDARD_WITHIN_LN_TEFF = 0.08
+STANDARD_WITHIN_DEX = 0.25
+STANDARD_PER_DEX_MAG = 0.4  # below 4000 A: what [Fe/H] explains of a standard's residual (vetter.light.model_error)
+STANDARDS_FLOOR_MAG = 0.02  # three of the stars shaped the blue correction
+ANCHORS = ("Generic/Johnson.V", "2MASS/2MASS.J")  # the magnitudes that fix the angular diameter, first one measured
+R_V = 3.1
 LOGG_GIANT_BELOW = 3.0
 COOL_GIANT_MAG = 0.15
 COOL_GIANT_BELOW_K = 4200.0
@@ -129,26 +137,58 @@ def sequence_residuals(photometer: Photometer, stars: Sequence[Mapping[str, floa
     return out
 
 
-def standard_residuals(sources: Sources, photometer: Photometer, curves: Sequence[Curve]) -> tuple[Array, Array]:
-    """Return temperatures (n,) and residuals (n, n_bands) of solar-type standards, scaled to zero mean at V and Ks."""
-    trial = np.arange(5600.0, 6400.1, 10.0)
-    anchors = [photometer.ids.index(name) for name in ("Generic/Johnson.V", "GAIA/GAIA3.Grp", "2MASS/2MASS.Ks")]
-    temperatures, rows = [], []
-    for name, gravity in STARS.items():
-        wavelength, flux = fits_columns(sources.standards()[f"calspec/{name}.fits"], "WAVELENGTH", "FLUX")
-        inside = np.array([c.wavelength[0] >= wavelength[0] and c.wavelength[-1] <= wavelength[-1] for c in curves])
-        observed = np.array(
-            [
-                -2.5 * np.log10(hat_weights(c, wavelength) @ flux) if ok else np.nan
-                for c, ok in zip(curves, inside, strict=True)
-            ]
-        )
-        models = np.array([-2.5 * np.log10(photometer.weights @ photometer.surface_flux(t, gravity)) for t in trial])
-        difference = models - observed
-        best = int(np.argmin(difference[:, anchors].var(axis=1)))
-        temperatures.append(trial[best])
-        rows.append(difference[best] - difference[best, anchors].mean())
-    return np.array(temperatures), np.array(rows)
+def standard_difference(
+    photometer: Photometer, curves: Sequence[Curve], standard: Standard, spectrum: tuple[Array, Array], law: Array
+) -> Array:
+    """Return (n_bands,) model minus observed magnitude relative to the anchor, NaN where the spectrum does not reach.
+
+    ``law`` (nw,) is A(lambda)/A(V) on the photometer's wavelengths.
+    """
+    wavelength, flux = spectrum
+    observed = np.array(
+        [
+            -2.5 * np.log10(hat_weights(c, wavelength) @ flux)
+            if c.wavelength[0] >= wavelength[0] and c.wavelength[-1] <= wavelength[-1]
+            else np.nan
+            for c in curves
+        ]
+    )
+    dust = 10 ** (-0.4 * R_V * standard.ebv_mag * law)
+    surface = photometer.surface_flux(standard.teff_k, standard.logg)
+    difference = -2.5 * np.log10(photometer.weights @ (surface * dust)) - observed
+    anchors = difference[[photometer.ids.index(name) for name in ANCHORS]]
+    return np.asarray(difference - anchors[np.isfinite(anchors)][0])
+
+
+def standard_residuals(
+    sources: Sources, photometer: Photometer, curves: Sequence[Curve], pivots_angstrom: Sequence[float]
+) -> tuple[Array, Array]:
+    """Return temperatures (n,) and residuals (n, n_bands) of the dwarf standards of nearly solar metallicity.
+
+    Of a residual below 4000 A what the star's [Fe/H] explains is taken out in quadrature.
+    """
+    columns = dust_columns()
+    law = np.interp(np.log(photometer.nodes), np.log(columns["wavelength_angstrom"]), columns["a"])
+    used = [
+        s
+        for s in STANDARDS.values()
+        if s.kind == "star" and s.logg >= LOGG_GIANT_BELOW and abs(s.feh) <= STANDARD_WITHIN_DEX and s.teff_k > 3000.0
+    ]
+    blue = np.array(pivots_angstrom) < _CLASS_ENDS_ANGSTROM[0]
+    rows = []
+    for standard in used:
+        spectrum = standard_spectrum(sources, standard)
+        difference = standard_difference(photometer, curves, standard, spectrum, law)
+        explained = np.where(blue, STANDARD_PER_DEX_MAG * standard.feh, 0.0)
+        rows.append(np.sqrt(np.maximum(difference**2 - explained**2, 0.0)))
+    return np.array([standard.teff_k for standard in used]), np.array(rows)
+
+
+def largest_near(teff_k: Array, residuals: Array, node_k: float) -> Array:
+    """Return (n_bands,) the largest residual of stars near one temperature, NaN where there is none."""
+    near = residuals[np.abs(np.log(teff_k / node_k)) <= STANDARD_WITHIN_LN_TEFF]
+    known = np.isfinite(near).any(axis=0)
+    return np.where(known, np.nanmax(np.vstack([near, np.where(known, -np.inf, 0.0)]), axis=0), np.nan)
 
 
 def windowed_rms(teff_k: Array, residuals: Array, node_k: float) -> Array:
@@ -173,12 +213,12 @@ def build_model_error(
     stars = [star for star in rows if np.isfinite(star["logg"] + star["M_V"])]
     star_teff = np.array([star["teff_k"] for star in stars])
     residuals = sequence_residuals(photometer, stars)
-    standard_teff, standard = standard_residuals(sources, photometer, curves)
+    standard_teff, standard = standard_residuals(sources, photometer, curves, pivots_angstrom)
     dwarf = np.empty((NODES_K.size, len(pivots_angstrom)))
     for i, node in enumerate(NODES_K):
-        by_standards = np.maximum(windowed_rms(standard_teff, standard, node), STANDARDS_FLOOR_MAG)
+        by_standards = np.maximum(largest_near(standard_teff, standard, node), STANDARDS_FLOOR_MAG)
         by_sequence = windowed_rms(star_teff, residuals, node)
-        both = np.where(np.isfinite(by_sequence), by_sequence, by_standards)
+        both = np.fmax(by_sequence, by_standards)
         start = np.array([first_found_mag(pivot, node) for pivot in pivots_angstrom])
         if node < COOL_DWARF_BELOW_K:
             both = np.maximum(both, COOL_SHARE * start)

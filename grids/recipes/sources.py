@@ -92,6 +92,13 @@ ARCHIVES: Mapping[str, Archive] = {
         "60e88c6b75c7968f5f8f3beeb142b33464991ee270d0802f031fd769bf19d575",
         "MIT",
     ),
+    "dustapprox": Archive(
+        "dustapprox",
+        "0.2.0",
+        "dustapprox-0.2.0-py3-none-any.whl",
+        "0bf5d338b8619b25e00daba80fc416ee9b689148a6af089dd80d18cf6d8e3dfd",
+        "BSD-3-Clause",
+    ),
 }
 _TAR_FOLDER = "pypeit-1.8.1/pypeit/data/standards/"
 _TAR_WANTED = ("kurucz93/kp00/kp00_", "calspec/")

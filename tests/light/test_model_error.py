@@ -33,18 +33,33 @@ def test_table(engine: LightEngine, band: str, teff_k: float, logg: float, expec
 
 
 @pytest.mark.parametrize(
-    ("pivot_angstrom", "per_dex"), [(2300.0, 0.3), (3600.0, 0.3), (5500.0, 0.05), (9000.0, 0.05), (21600.0, 0.02)]
+    ("pivot_angstrom", "per_dex"), [(2300.0, 0.4), (3600.0, 0.4), (4400.0, 0.15), (9000.0, 0.07), (21600.0, 0.04)]
 )
-def test_metallicity_per_dex(pivot_angstrom: float, per_dex: float) -> None:
-    assert metallicity_error_mag(pivot_angstrom, np.array([-2.0, 0.0, 1.0])) == pytest.approx(
-        [2 * per_dex, 0.0, per_dex]
-    )
+def test_metallicity_per_dex_of_solar_light(pivot_angstrom: float, per_dex: float) -> None:
+    error = metallicity_error_mag(pivot_angstrom, np.full(3, 6000.0), np.array([-2.0, 0.0, 1.0]), known=False)
+    assert error == pytest.approx([2 * per_dex, 0.0, per_dex])
+
+
+@pytest.mark.parametrize(("teff_k", "per_dex"), [(3000.0, 0.2), (3500.0, 0.2), (4500.0, 0.03), (20000.0, 0.03)])
+def test_metallicity_per_dex_where_the_light_follows_it(teff_k: float, per_dex: float) -> None:
+    error = metallicity_error_mag(5500.0, np.array([teff_k]), np.array([-0.5]), known=True)
+    assert error == pytest.approx([0.5 * per_dex])
 
 
 @given(st.floats(-3.0, 1.0), st.floats(2000.0, 50000.0), st.floats(0.0, 5.0))
 def test_metallicity_adds_in_quadrature(engine: LightEngine, feh: float, teff_k: float, logg: float) -> None:
+    """The small world has no metallicity table: its light is solar, 0.07 mag per dex in V."""
     solar = engine.model_error_mag(VISUAL, teff_k, logg)
-    assert engine.model_error_mag(VISUAL, teff_k, logg, feh) == pytest.approx(np.hypot(solar, 0.05 * abs(feh)))
+    assert engine.model_error_mag(VISUAL, teff_k, logg, feh) == pytest.approx(np.hypot(solar, 0.07 * abs(feh)))
+
+
+def test_shipped_light_follows_metallicity_between_470_and_1000_nm() -> None:
+    engine = LightEngine.build([VISUAL])
+    poor = {band: float(engine.model_error_mag(band, 6000.0, 4.4, -1.0)) for band in load_tables().passbands}
+    solar = {band: float(engine.model_error_mag(band, 6000.0, 4.4)) for band in poor}
+    assert poor[VISUAL] == pytest.approx(np.hypot(solar[VISUAL], 0.03))
+    assert poor["Generic/Johnson.B"] == pytest.approx(np.hypot(solar["Generic/Johnson.B"], 0.15))
+    assert poor[INFRARED] == pytest.approx(np.hypot(solar[INFRARED], 0.04))
 
 
 def test_untabulated_band_takes_the_nearest_in_wavelength(engine: LightEngine, world: LightTables) -> None:

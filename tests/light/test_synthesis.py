@@ -32,7 +32,7 @@ def test_subdivision_keeps_the_nodes() -> None:
 
 def test_steep_columns_get_more_nodes(world: LightTables) -> None:
     """The ultraviolet of cool black bodies bends; the Rayleigh-Jeans side is straight."""
-    rows = [len(LightEngine.build([band], tables=world)._grids["star"].ln_teff) for band in ("NUV-like", "W1-like")]
+    rows = [len(LightEngine.build([band], tables=world)._stars.slices[0].ln_teff) for band in ("NUV-like", "W1-like")]
     assert rows[0] > rows[1]
 
 

@@ -12,7 +12,15 @@ from hypothesis import strategies as st
 pytest.importorskip("vetter.grids.recipes", reason="the recipes are part of a source checkout only")
 
 from vetter.grids.build import CHECKSUMS_BEGIN, CHECKSUMS_END, write_checksums
-from vetter.grids.recipes import atmospheres, blue_correction, cool_correction, hot_stars, model_error, sequence
+from vetter.grids.recipes import (
+    atmospheres,
+    blue_correction,
+    cool_correction,
+    hot_stars,
+    metallicity,
+    model_error,
+    sequence,
+)
 from vetter.grids.recipes.band_list import BANDS
 from vetter.grids.recipes.dwarf_sequence import _value
 from vetter.grids.recipes.passbands import Curve, _two_columns, hat_weights, mean_flux, tidy
@@ -211,6 +219,48 @@ def test_windowed_rms_sees_its_own_temperatures_only() -> None:
 )  # fmt: skip
 def test_first_found_errors(pivot: float, teff: float, expected: float) -> None:
     assert model_error.first_found_mag(pivot, teff) == expected
+
+
+def test_largest_residual_of_the_stars_nearby() -> None:
+    teff = np.array([5700.0, 5900.0, 9000.0])
+    residuals = np.array([[0.01, np.nan, 0.03], [0.04, np.nan, 0.02], [0.5, 0.5, 0.5]])
+    assert model_error.largest_near(teff, residuals, 5750.0) == pytest.approx([0.04, np.nan, 0.03], nan_ok=True)
+    assert np.isnan(model_error.largest_near(teff, residuals, 20000.0)).all()
+
+
+def test_metallicity_grid_takes_the_mean_of_two_and_the_nearest_gravity() -> None:
+    head = "teff,logg,feh,passband,mag0,mag,A0,Ax"
+    rows = [
+        f"{teff},{logg},{feh},GAIA_GAIA3.{band},{level + extra},{level + extra},0.0,0.0"
+        for teff, logg in ((4000.0, 4.0), (4000.0, 4.5), (5000.0, 4.5))
+        for feh, level in ((-1.0, 0.3), (0.0, 0.1))
+        for band in ("G", "Gbp", "Grp")
+        for extra in ((0.0, 0.02) if feh == -1.0 else (0.0,))
+    ]
+    rows.append("4000.0,4.0,0.0,GAIA_GAIA3.G,0.1,9.9,1.0,9.8")
+    arrays = metallicity.metallicity_arrays([head, *rows])
+    assert arrays["feh"].tolist() == [-1.0, 0.0]
+    assert arrays["difference_mag"].shape == (2, 2, 2, 3)
+    assert arrays["difference_mag"][:, :, 0] == pytest.approx(np.full((2, 2, 3), 0.21), abs=1e-6)
+    assert (arrays["difference_mag"][:, :, 1] == 0.0).all()
+    with pytest.raises(ValueError, match="the metallicity grid has columns"):
+        metallicity.metallicity_arrays(["a,b", *rows])
+
+
+def test_kinks_are_drawn_to_the_cubic_and_smooth_rows_kept() -> None:
+    teff = np.array([2000, 2200, 2400, 2600, 2700, 2800, 2950, 3100, 3200.0])
+    logg = np.array([2.0, 4.5])
+    smooth = np.log([[planck_flux(NODES, t)] * 2 for t in teff])
+    kinked = smooth.copy()
+    kinked[4, 1] += 0.1 * np.exp(-(((NODES - 6000.0) / 500.0) ** 2))
+    filled = np.zeros((9, 2), dtype=bool)
+    drawn = cool_correction.without_kinks(atmospheres.Atmospheres(NODES, teff, logg, kinked, filled)).ln_flux
+    before, after = (np.abs(cube[4, 1] - smooth[4, 1]).max() for cube in (kinked, drawn))
+    assert after < 0.6 * before
+    assert (drawn[:, 0] == kinked[:, 0]).all()
+    kept = cool_correction.without_kinks(atmospheres.Atmospheres(NODES, teff, logg, smooth, filled)).ln_flux
+    # Black bodies between 2400 and 2950 K: exp(c/T) is not a cubic in ln T by so much at 1000 A.
+    assert np.abs(kept - smooth)[:, :, NODES > 4000.0].max() < 0.005
 
 
 def test_band_list_has_no_repeats_and_known_archives() -> None:

@@ -6,6 +6,7 @@ The spectra are CALSPEC's (Bohlin et al.); ``standard_stars.npz`` beside this fi
 from __future__ import annotations
 
 import json
+from collections.abc import Iterable
 from functools import cache
 from importlib.resources import files
 from pathlib import Path
@@ -14,8 +15,13 @@ from typing import Any
 import numpy as np
 import pytest
 
+pytest.importorskip("vetter.grids.recipes", reason="the recipes are part of a source checkout only")
+
+from vetter.grids.recipes.standard_stars import STANDARDS
+
+from vetter.light import Component, LightEngine
+
 GRIDS = Path(str(files("vetter.grids")))
-AU_CM, RSUN_CM, TEN_PC_CM = 1.495978707e13, 6.957e10, 3.0856775814913673e19
 JOHNSON_V = "Generic/Johnson.V"
 
 
@@ -84,7 +90,10 @@ def test_gaia_vega_zero_points(band: str, ab: float) -> None:
     ],
 )  # fmt: skip
 def test_uvot_vega_to_ab(band: str, ab: float) -> None:
-    """Breeveld et al. 2011, AIP Conf. Proc. 1358, 373 (from memory), from an older Vega that is 3 % off in the UV."""
+    """The mission's zero-point page of 2011 (Breeveld et al. 2011, AIP Conf. Proc. 1358, 373; looked up).
+
+    0.04: its Vega is an older spectrum, 3 % different in the ultraviolet; zero points themselves are given to 0.03.
+    """
     assert true_ab(band, "vega_stis") == pytest.approx(ab, abs=0.04)
 
 
@@ -127,85 +136,115 @@ def test_hipparcos_magnitudes(star: str, mag: float) -> None:
     assert magnitude("Hipparcos/Hipparcos.Hp", star) == pytest.approx(mag, abs=0.015)
 
 
-# Willmer 2018, ApJS 236, 47 (absolute magnitudes of the Sun, from memory). His B and V differ by 0.63, solar twins by
-# 0.653 (Ramirez et al. 2012, ApJ 752, 5): the spectrum is held to the twins.
+# Willmer 2018, ApJS 236, 47: apparent magnitudes of the Sun, looked up in a public copy of his table 3, AB for SDSS,
+# else Vega. His B and V differ by 0.63, solar twins by 0.653 (Ramirez et al. 2012, ApJ 752, 5, from memory):
+# the spectrum is held to the twins.
 WILLMER = {
-    "Generic/Johnson.B": 5.44, JOHNSON_V: 4.81, "GAIA/GAIA3.G": 4.67, "2MASS/2MASS.J": 3.67, "2MASS/2MASS.H": 3.32,
-    "2MASS/2MASS.Ks": 3.27, "WISE/WISE.W1": 3.26, "SLOAN/SDSS.g": 5.11, "SLOAN/SDSS.r": 4.65,
+    "Generic/Johnson.B": -26.13, JOHNSON_V: -26.76, "2MASS/2MASS.J": -27.90, "2MASS/2MASS.H": -28.25,
+    "2MASS/2MASS.Ks": -28.30, "SLOAN/SDSS.g": -26.47, "SLOAN/SDSS.r": -26.93, "SLOAN/SDSS.i": -27.05,
 }  # fmt: skip
 
 
-@pytest.mark.parametrize("band", [band for band in WILLMER if band != "WISE/WISE.W1"])
+@pytest.mark.parametrize("band", list(WILLMER))
 def test_spectrum_of_the_sun(band: str) -> None:
-    absolute = magnitude(band, "sun") + 5 * np.log10(TEN_PC_CM / AU_CM)
     expected = WILLMER[JOHNSON_V] + 0.653 if band == "Generic/Johnson.B" else WILLMER[band]
-    assert absolute == pytest.approx(expected, abs=0.035)  # 2 %: absolute scale of the solar spectrum
+    assert magnitude(band, "sun") == pytest.approx(expected, abs=0.035)  # 2 % each: scale of his Sun and of his Vega
 
 
-def table_flux(teff_k: float, logg: float) -> tuple[np.ndarray, np.ndarray]:
-    """Wavelengths and surface flux, bilinear in ln F over (log Teff, log g): the slow twin of the engine."""
-    with np.load(GRIDS / "atmospheres.npz", allow_pickle=False) as table:
-        teff, gravity, cube = table["teff_k"], table["logg"], table["ln_flux"].astype(np.float64)
-        i, j = int(np.searchsorted(teff, teff_k)) - 1, int(np.searchsorted(gravity, logg)) - 1
-        x = np.log(teff_k / teff[i]) / np.log(teff[i + 1] / teff[i])
-        y = (logg - gravity[j]) / (gravity[j + 1] - gravity[j])
-        low = (1 - y) * cube[i, j] + y * cube[i, j + 1]
-        high = (1 - y) * cube[i + 1, j] + y * cube[i + 1, j + 1]
-        return table["wavelength_angstrom"], np.exp((1 - x) * low + x * high)
+# The tables against the standard stars: published Teff, log g, [Fe/H] and E(B-V), nothing fitted but the angular
+# diameter, which V fixes (J where there is no V).
+R_V = 3.1
+STARS = [name for name, standard in STANDARDS.items() if np.isfinite(standard.teff_k)]
 
 
 @cache
-def weights() -> np.ndarray:
-    with np.load(GRIDS / "passbands.npz", allow_pickle=False) as archive:
-        return archive["weights"]
+def engine() -> LightEngine:
+    return LightEngine.build(list(bands()), a_v_max_mag=1.0)
 
 
-@pytest.mark.parametrize("band", sorted(WILLMER))
-def test_table_gives_the_sun(band: str) -> None:
-    """A star of 5777 K, log g 4.44, one solar radius at 10 pc, within 0.05 mag of the published Sun."""
-    _, flux = table_flux(5777.0, 4.44)
-    entry = bands()[band][0]
-    index = list(bands()).index(band)
-    received = weights()[index] @ flux * (RSUN_CM / TEN_PC_CM) ** 2
-    zero = entry[f"zero_flux_{entry['usual_system'].lower()}"]
-    assert -2.5 * np.log10(received / zero) == pytest.approx(WILLMER[band], abs=0.05)
+@cache
+def residuals(star: str) -> dict[str, float]:
+    """Table minus spectrum in every band that the measured spectrum covers, relative to the anchor (left out)."""
+    standard = STANDARDS[star]
+    values = (np.array([value]) for value in (standard.teff_k, standard.logg, standard.feh, 1.0))
+    computed = engine().magnitudes(Component(standard.kind, *values), 10.0, R_V * standard.ebv_mag)[0]
+    reach = spectra()[f"{star}_wavelength"][[0, -1]]
+    covered = [b for b in bands() if reach[0] <= bands()[b][1][0] and bands()[b][1][-1] <= reach[1]]
+    difference = {band: float(computed[engine().bands.index(band)]) - magnitude(band, star) for band in covered}
+    anchor = difference.pop(anchor_of(difference))
+    return {band: value - anchor for band, value in difference.items()}
 
 
-@pytest.mark.parametrize(
-    ("star", "teff_k", "logg"), [("sun", 5777, 4.44), ("p041c", 5890, 4.4), ("hd209458", 6070, 4.36)]
-)
-def test_colours_of_solar_type_stars(star: str, teff_k: float, logg: float) -> None:
-    """The table against real spectra, relative to V: 0.035 mag, 0.06 in U; the temperatures fit the infrared."""
-    _, flux = table_flux(teff_k, logg)
-    residual = {}
-    for index, band in enumerate(bands()):
-        limits = bands()[band][1][[0, -1]]
-        if limits[0] > 2900 and limits[1] < 25000:
-            residual[band] = -2.5 * np.log10(weights()[index] @ flux / mean_flux(band, star))
-    for band, value in residual.items():
-        blue = bands()[band][0]["pivot_angstrom"] < 4000
-        assert value - residual[JOHNSON_V] == pytest.approx(0, abs=0.06 if blue else 0.035), band
+def anchor_of(covered: Iterable[str]) -> str:
+    return JOHNSON_V if JOHNSON_V in covered else "2MASS/2MASS.J"
 
 
-@pytest.mark.parametrize(
-    ("star", "teff_k", "logg"), [("g191b2b", 60920, 7.55), ("gd153", 39390, 7.77), ("gd71", 32747, 7.68)]
-)
-def test_colours_of_white_dwarfs(star: str, teff_k: float, logg: float) -> None:
-    """The hydrogen table against the three primary standards (Bohlin, Gordon & Tremblay 2014, PASP 126, 711).
+def stored_error(star: str, band: str) -> float:
+    standard = STANDARDS[star]
+    return float(engine().model_error_mag(band, standard.teff_k, standard.logg, standard.feh))
 
-    Relative to PS1 r, 0.02 mag; SDSS u and z carry the offsets of that system in one and not in the other.
+
+def test_there_are_enough_standards() -> None:
+    assert len(STARS) >= 20
+    assert sum(len(residuals(star)) for star in STARS) >= 450
+
+
+def test_standard_stars_within_the_stored_errors() -> None:
+    """At least 95 % of all bands within the stored error of the band alone, though the anchor has an error too."""
+    within = [abs(value) <= stored_error(star, band) for star in STARS for band, value in residuals(star).items()]
+    assert np.mean(within) >= 0.95
+
+
+@pytest.mark.parametrize("star", STARS)
+def test_no_standard_star_is_far_off(star: str) -> None:
+    """Every band within twice the stored errors of band and anchor in quadrature."""
+    for band, value in residuals(star).items():
+        assert abs(value) < 2.0 * np.hypot(stored_error(star, band), stored_error(star, anchor_of(bands()))), band
+
+
+@pytest.mark.parametrize("star", ["c26202", "sf1615", "bd17"])
+def test_metal_poor_stars_between_470_and_1000_nm(star: str) -> None:
+    """[Fe/H] -0.39, -0.61, -1.69: with the published differences every band there is within 0.03 mag of V (g z y .045).
+
+    The same bands with solar light: V minus G alone was 0.03, 0.03 and 0.11 mag off when only G was corrected.
     """
-    with np.load(GRIDS / "white_dwarfs.npz", allow_pickle=False) as table:
-        teff, gravity, mag = table["da_teff_k"], table["da_logg"], table["da_surface_mag"]
-        names = table["da_bands"].tolist()
-    i, j = int(np.searchsorted(teff, teff_k)) - 1, int(np.searchsorted(gravity, logg)) - 1
-    x = np.log(teff_k / teff[i]) / np.log(teff[i + 1] / teff[i])
-    y = (logg - gravity[j]) / (gravity[j + 1] - gravity[j])
-    published = (1 - x) * ((1 - y) * mag[i, j] + y * mag[i, j + 1])
-    published += x * ((1 - y) * mag[i + 1, j] + y * mag[i + 1, j + 1])
-    compared = [
-        b for b in names if b.startswith(("PAN", "GAIA", "SLOAN/SDSS.g", "SLOAN/SDSS.r", "SLOAN/SDSS.i", "GALEX"))
-    ]
-    residual = {band: magnitude(band, star) - published[names.index(band)] for band in compared}
-    for band, value in residual.items():
-        assert value - residual["PAN-STARRS/PS1.r"] == pytest.approx(0, abs=0.02), band
+    for band, value in residuals(star).items():
+        pivot = bands()[band][0]["pivot_angstrom"]
+        if 4700.0 < pivot < 10000.0:
+            assert abs(value) < (0.03 if 4900.0 < pivot < 8500.0 else 0.045), band
+    colour = residuals(star)["GAIA/GAIA3.Gbp"] - residuals(star)["GAIA/GAIA3.Grp"]
+    assert abs(colour) < 0.01
+
+
+@pytest.mark.parametrize("star", ["sun", "hd209458", "p041c", "p177d", "p330e", "snap2"])
+def test_colours_of_solar_type_stars(star: str) -> None:
+    """Within the errors first found when the recipe was tried, 0.03 mag from B to Ks and 0.09 bluer, where not listed.
+
+    An earlier version took P041C at 5890 K without dust and 0.035 and 0.06 mag. Its published 5960 K and E(B-V) 0.022
+    give 0.02 in Ks; 5960 K without dust would give 0.08. The listed excesses are real: P330E, SNAP-2 and P177D have
+    [Fe/H] -0.16, -0.19, -0.02 and E(B-V) 0.03-0.045, known to 0.01 (0.03 mag in V-Ks).
+    """
+    known = {("p177d", "2MASS/2MASS.Ks"): 0.045} | {
+        (name, band): 0.13
+        for name in ("snap2", "p330e")
+        for band in bands()
+        if bands()[band][0]["pivot_angstrom"] < 3900
+    }
+    for band, value in residuals(star).items():
+        if bands()[band][0]["pivot_angstrom"] < 3000:
+            continue  # the stored error is 0.2 and more there
+        first_found = 0.09 if bands()[band][0]["pivot_angstrom"] < 3900 else 0.03
+        assert abs(value) < known.get((star, band), first_found), band
+
+
+@pytest.mark.parametrize("star", ["g191b2b", "gd153", "gd71"])
+def test_colours_of_white_dwarfs(star: str) -> None:
+    """Three primary standards (Bohlin, Gordon & Tremblay 2014, PASP 126, 711), relative to PS1 r: 0.02 mag, U too.
+
+    U carries the constant 0.09 mag between the table's passband and ours, measured on these stars. SDSS u and z are
+    left out: the offsets of that system are in ours and not in the table; B: the colour term of the passband.
+    """
+    found = residuals(star)
+    names = [b for b in found if b.startswith(("PAN", "GAIA", "SLOAN/SDSS.g", "SLOAN/SDSS.r", "SLOAN/SDSS.i", "GALEX"))]
+    for band in (*names, "Generic/Johnson.U"):
+        assert found[band] - found["PAN-STARRS/PS1.r"] == pytest.approx(0, abs=0.02), band

@@ -13,9 +13,11 @@ from vetter.errors import InputError
 from vetter.light import model_error
 from vetter.light.extinction import extinction_curve
 from vetter.light.magnitude_grid import MagnitudeGrid
+from vetter.light.metallicity import MetallicityCorrection, StarGrid, follows_metallicity
 from vetter.light.passbands import custom_passband, find_band, window_weights
 from vetter.light.synthesis import Columns, magnitude_grid
 from vetter.light.tables import FloatArray, LightTables, ModelErrorTable, Passband, load_tables
+from vetter.light.user_grids import with_user_grid
 from vetter.light.white_dwarfs import column_magnitudes, white_dwarf_grid, with_hot_end
 
 if TYPE_CHECKING:
@@ -32,7 +34,8 @@ class Component:
     """One kind of body, n samples of it; every array has shape (n,).
 
     ``kind`` is "star" (any photosphere, helium stars too) or "white_dwarf" (hydrogen surface). Units: K, log10 of
-    cm/s2, dex, solar radii. ``feh`` does not change the light (the tables are solar), only its model error.
+    cm/s2, dex, solar radii. ``feh`` of a star changes its light between 4700 and 10000 A with the shipped atmospheres
+    and everywhere with a grid that has a metallicity axis; elsewhere it only enlarges the model error.
     """
 
     kind: str
@@ -66,7 +69,8 @@ class LightEngine:
     pivots_angstrom: tuple[float, ...]
     r_v: float
     a_v_max_mag: float
-    _grids: Mapping[str, MagnitudeGrid] = field(repr=False)
+    _stars: StarGrid = field(repr=False)
+    _white_dwarfs: MagnitudeGrid = field(repr=False)
     _passbands: Mapping[str, Passband] = field(repr=False)
     _model_errors: ModelErrorTable = field(repr=False)
 
@@ -85,14 +89,18 @@ class LightEngine:
         systems: Mapping[str, str] | None = None,
         passbands: Sequence[CustomPassband] = (),
         tables: LightTables | None = None,
+        grid: str | None = None,
     ) -> LightEngine:
         """Make an engine for these bands (identifiers or synonyms) and windows (nm).
 
         ``systems`` maps a band to "Vega" or "AB" where not its usual one; ``passbands`` are the user's own, named in
-        ``bands`` like the others; ``tables`` default to the shipped ones. Raises InputError for an unknown band,
-        a window outside the tables, R_V outside the law, or a system that a band has no zero point in.
+        ``bands`` like the others; ``tables`` default to the shipped ones; ``grid`` names atmospheres of the user's own
+        (see :mod:`vetter.light.user_grids`). Raises InputError for an unknown band or grid, a window outside the
+        tables, R_V outside the law, or a system that a band has no zero point in.
         """
         tables = tables or load_tables()
+        if grid is not None:
+            tables = with_user_grid(tables, grid)
         wavelength = tables.atmospheres.wavelength_angstrom
         known = {**tables.passbands, **{own.id: custom_passband(own, wavelength) for own in passbands}}
         chosen = [find_band(name, known) for name in bands]
@@ -112,11 +120,9 @@ class LightEngine:
         )
         names = tuple(band.id for band in chosen)
         a_v_max_mag = max(float(a_v_max_mag), MIN_A_V_MAX_MAG)
-        stars = magnitude_grid(tables.atmospheres, columns, a_v_max_mag)
-        surfaces = column_magnitudes(tables.white_dwarfs, names, columns, tables.passbands, wavelength)
-        dwarfs = white_dwarf_grid(tables.white_dwarfs, surfaces, stars)
-        grids = {"star": with_hot_end(stars, dwarfs), "white_dwarf": dwarfs}
-        return cls(names, windows, in_system, tuple(pivots), r_v, a_v_max_mag, grids, known, tables.model_errors)
+        stars, dwarfs = _grids(tables, columns, names, a_v_max_mag)
+        errors = tables.model_errors
+        return cls(names, windows, in_system, tuple(pivots), r_v, a_v_max_mag, stars, dwarfs, known, errors)
 
     def magnitudes(self, component: Component, distance_pc: ArrayLike, a_v_mag: ArrayLike) -> FloatArray:
         """Return apparent magnitudes (n, n_columns) of n bodies at ``distance_pc`` (> 0) behind ``a_v_mag``.
@@ -129,7 +135,11 @@ class LightEngine:
         a_v = np.broadcast_to(np.asarray(a_v_mag, dtype=float), n)
         if n and (a_v.min() < 0.0 or a_v.max() > self.a_v_max_mag * (1.0 + 1e-12)):
             raise ValueError(f"a_v_mag {a_v.min()} to {a_v.max()}: the engine was built for 0 to {self.a_v_max_mag}")
-        magnitudes = self._grids[component.kind].evaluate(component.teff_k, component.logg, a_v)
+        if component.kind == "star":
+            feh = np.broadcast_to(np.asarray(component.feh, dtype=float), n)
+            magnitudes = self._stars.evaluate(component.teff_k, component.logg, feh, a_v)
+        else:
+            magnitudes = self._white_dwarfs.evaluate(component.teff_k, component.logg, a_v)
         dilution = 5.0 * np.log10(np.asarray(distance_pc, dtype=float) / (10.0 * component.radius_rsun))
         magnitudes += np.broadcast_to(dilution, n)[:, None]
         return magnitudes
@@ -139,16 +149,27 @@ class LightEngine:
 
         Stars above log g 5 count as inside: their light is that of log g 5. White dwarfs of any gravity do too.
         """
-        grid = self._grids[component.kind]
+        grid = self._stars.slices[0] if component.kind == "star" else self._white_dwarfs
         ln_teff = np.log(component.teff_k)
         warm = (ln_teff >= grid.ln_teff[0]) & (ln_teff <= grid.ln_teff[-1])
         return np.asarray(warm & ((component.kind == "white_dwarf") | (component.logg >= grid.logg[0])))
 
     def model_error_mag(self, band: str, teff_k: ArrayLike, logg: ArrayLike, feh: ArrayLike = 0.0) -> FloatArray:
         """Return the one-sigma error (mag) of a synthetic magnitude in ``band``; the arrays broadcast."""
-        values = (np.asarray(value, dtype=float) for value in (teff_k, logg, feh))
+        teff, gravity, metals = (np.asarray(value, dtype=float) for value in (teff_k, logg, feh))
         found = find_band(band, self._passbands)
-        return model_error.model_error_mag(self._model_errors, found, self._passbands, *values)
+        known = self.metallicity_known(found.id)
+        return model_error.model_error_mag(
+            self._model_errors, found, self._passbands, teff, gravity, metals, metallicity_known=known
+        )
+
+    def metallicity_known(self, band: str) -> bool:
+        """Return whether [Fe/H] changes the light of stars in this band."""
+        if len(self._stars.slices) > 1:
+            return True
+        return self._stars.correction is not None and follows_metallicity(
+            find_band(band, self._passbands).pivot_angstrom
+        )
 
     def total_magnitudes(self, magnitudes: Sequence[FloatArray]) -> FloatArray:
         """Return the magnitudes (n, k) of the summed light; see :func:`total_magnitudes`."""
@@ -167,6 +188,30 @@ def total_magnitudes(magnitudes: Sequence[FloatArray]) -> FloatArray:
     for magnitude in magnitudes[1:]:
         total = np.logaddexp(total, to_ln * magnitude)
     return np.asarray(total / to_ln)
+
+
+def _grids(
+    tables: LightTables, columns: Columns, bands: tuple[str, ...], a_v_max_mag: float
+) -> tuple[StarGrid, MagnitudeGrid]:
+    """Return the grids of stars and of white dwarfs.
+
+    Atmospheres of the user's own end where they end: only the shipped ones are continued to 150 kK.
+    """
+    solar = magnitude_grid(tables.atmospheres, columns, a_v_max_mag)
+    surfaces = column_magnitudes(
+        tables.white_dwarfs, bands, columns, tables.passbands, tables.atmospheres.wavelength_angstrom
+    )
+    dwarfs = white_dwarf_grid(tables.white_dwarfs, surfaces, solar)
+    if tables.slices:
+        slices = tuple(magnitude_grid(part, columns, a_v_max_mag) for _, part in tables.slices)
+        return StarGrid(np.array([feh for feh, _ in tables.slices]), slices), dwarfs
+    table, names = tables.metallicity, (*bands, *[""] * (len(columns.pivot_angstrom) - len(bands)))
+    correction = (
+        None
+        if table is None
+        else MetallicityCorrection.of(table, names, columns.pivot_angstrom.tolist(), tables.passbands)
+    )
+    return StarGrid(np.zeros(1), (with_hot_end(solar, dwarfs),), correction), dwarfs
 
 
 def _zero_flux(band: Passband, system: str) -> float:

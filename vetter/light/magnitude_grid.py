@@ -52,8 +52,8 @@ class MagnitudeGrid:
         """Return the interpolated coefficients (n, n_power, k): the mean of the four corners, gathered as rows."""
         nt, ng, n_power, k = self.coefficients.shape
         rows = self.coefficients.reshape(nt * ng, n_power * k)
-        t_low, t_share = _bracket(self.ln_teff, np.log(teff_k))
-        g_low, g_share = _bracket(self.logg, logg)
+        t_low, t_share = bracket(self.ln_teff, np.log(teff_k))
+        g_low, g_share = bracket(self.logg, logg)
         corner = t_low * ng + g_low
         mean = rows.take(corner, axis=0)
         mean *= (1.0 - t_share) * (1.0 - g_share)
@@ -68,7 +68,7 @@ class MagnitudeGrid:
         return np.asarray(mean.reshape(-1, n_power, k), dtype=float)
 
 
-def _bracket(nodes: FloatArray, value: FloatArray) -> tuple[NDArray[np.intp], FloatArray]:
+def bracket(nodes: FloatArray, value: FloatArray) -> tuple[NDArray[np.intp], FloatArray]:
     """Return the lower node's index (n,) and the share (n, 1) of the upper one; values are clamped to the nodes."""
     low = np.minimum(np.searchsorted(nodes[1:], value, side="right"), len(nodes) - 2)
     share = (value - nodes[low]) / (nodes[low + 1] - nodes[low])

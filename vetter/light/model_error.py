@@ -14,21 +14,23 @@ from vetter.light.tables import FloatArray, ModelErrorTable, Passband
 
 FLOOR_MAG = 0.01
 
-ULTRAVIOLET_BELOW_ANGSTROM = 4000.0
-INFRARED_ABOVE_ANGSTROM = 10000.0
-PER_DEX_ULTRAVIOLET, PER_DEX_OPTICAL, PER_DEX_INFRARED = 0.3, 0.05, 0.02
-"""Extra error per dex of [Fe/H], because the tables are solar: a judgement, not a measurement."""
+PER_DEX_MAG = ((4000.0, 0.40), (5000.0, 0.15), (10000.0, 0.07), (np.inf, 0.04))
+"""Pivot wavelength (angstrom) below which, and error per dex of [Fe/H] where the light is that of solar atmospheres.
+
+Measured on the CALSPEC stars C26202, SF1615+001A and BD+17 4708 ([Fe/H] -0.39, -0.61, -1.69; Bohlin et al. 2017, AJ
+153, 234): what their residuals need beyond the error of solar stars, rounded up.
+"""
+
+KNOWN_PER_DEX_MAG = (np.log([3500.0, 4500.0]), (0.20, 0.03))
+"""The same, over ln Teff, where the effect of [Fe/H] is in the light: measured on those stars; below 4500 K half of the
+published effect itself, a judgement, because model atmospheres fail there."""
 
 
-def metallicity_error_mag(pivot_angstrom: float, feh: FloatArray) -> FloatArray:
-    """Return the error (mag) of using solar atmospheres for a star of ``feh`` (dex); a judgement."""
-    if pivot_angstrom < ULTRAVIOLET_BELOW_ANGSTROM:
-        per_dex = PER_DEX_ULTRAVIOLET
-    elif pivot_angstrom < INFRARED_ABOVE_ANGSTROM:
-        per_dex = PER_DEX_OPTICAL
-    else:
-        per_dex = PER_DEX_INFRARED
-    return per_dex * np.abs(feh)
+def metallicity_error_mag(pivot_angstrom: float, teff_k: FloatArray, feh: FloatArray, known: bool) -> FloatArray:
+    """Return the error (mag) that [Fe/H] (dex) adds; ``known`` says whether the light follows [Fe/H] in this band."""
+    if known:
+        return np.asarray(np.interp(np.log(teff_k), *KNOWN_PER_DEX_MAG) * np.abs(feh))
+    return next(per_dex for below, per_dex in PER_DEX_MAG if pivot_angstrom < below) * np.abs(feh)
 
 
 def nearest_band(table: ModelErrorTable, band: Passband, passbands: Mapping[str, Passband]) -> str:
@@ -45,15 +47,17 @@ def model_error_mag(
     teff_k: FloatArray,
     logg: FloatArray,
     feh: FloatArray,
+    *,
+    metallicity_known: bool = False,
 ) -> FloatArray:
     """Return the one-sigma error (mag, >= 0.01) of a synthetic magnitude; the inputs broadcast.
 
     Linear in log Teff between the table's nodes, held beyond them; giants have their own column; metallicity adds in
-    quadrature.
+    quadrature (see :func:`metallicity_error_mag`).
     """
     column = table.bands.index(nearest_band(table, band, passbands))
     ln_nodes, ln_teff = np.log(table.teff_k), np.log(teff_k)
     dwarf = np.interp(ln_teff, ln_nodes, table.dwarf_mag[:, column])
     giant = np.interp(ln_teff, ln_nodes, table.giant_mag[:, column])
     surface = np.maximum(np.where(np.asarray(logg) < table.logg_giant_below, giant, dwarf), FLOOR_MAG)
-    return np.asarray(np.hypot(surface, metallicity_error_mag(band.pivot_angstrom, feh)))
+    return np.asarray(np.hypot(surface, metallicity_error_mag(band.pivot_angstrom, teff_k, feh, metallicity_known)))

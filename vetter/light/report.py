@@ -1,4 +1,7 @@
-"""What the commands ``vetter light`` and ``vetter bands`` print, as plain dictionaries."""
+"""What the commands ``vetter light`` and ``vetter bands`` print, as plain dictionaries.
+
+``vetter grids`` is in :mod:`vetter.light.user_grids`, ``vetter grids --errors`` in :mod:`vetter.light.error_report`.
+"""
 
 from __future__ import annotations
 
@@ -52,8 +55,11 @@ def _cautions(engine: LightEngine, component: Component) -> list[str]:
         f"star {i + 1} lies outside the atmosphere tables: the nearest surface stands in"
         for i in np.flatnonzero(~engine.inside(component))
     ]
-    if component.feh.any():
-        cautions.append("the tables are solar: [Fe/H] does not change these magnitudes, only their error")
+    if component.feh.any() and not all(map(engine.metallicity_known, engine.bands)):
+        cautions.append(
+            "[Fe/H] changes the light from 470 to 1000 nm only; other bands are those of solar atmospheres, with a "
+            "larger error"
+        )
     return cautions
 
 
@@ -65,19 +71,21 @@ def light_report(
     bands: Sequence[str] = (),
     windows_nm: Sequence[Sequence[float]] = (),
     tables: LightTables | None = None,
+    grid: str | None = None,
 ) -> dict[str, Any]:
     """Return magnitudes of each star and of their sum, and light ratios to the first star in windows.
 
     The form is ``{"bands": {id: {"system", "total_mag", "star_mag": [...]}}, "windows": [{"wavelength_nm",
     "ratio_to_first": [...]}]}``; a list ``cautions`` is added when there is something to say. Without ``bands`` all
-    that are built in are reported. A_V = R_V E(B-V). Raises InputError naming everything that is out of range.
+    that are built in are reported. A_V = R_V E(B-V). ``grid`` names atmospheres of the user's own. Raises InputError
+    naming everything that is out of range.
     """
     _check(stars, windows_nm, distance_pc, ebv_mag)
     tables = tables or load_tables()
     names = [canonical_band(name) or name for name in bands or tables.passbands]
     windows: list[Window] = [(low, high) for low, high in windows_nm]
     a_v_mag = r_v * ebv_mag
-    engine = LightEngine.build(names, windows, r_v=r_v, a_v_max_mag=a_v_mag, tables=tables)
+    engine = LightEngine.build(names, windows, r_v=r_v, a_v_max_mag=a_v_mag, tables=tables, grid=grid)
     teff_k, logg, radius_rsun, feh = np.array([[*star, 0.0][:4] for star in stars], dtype=float).T
     component = Component("star", teff_k, logg, feh, radius_rsun)
     magnitudes = engine.magnitudes(component, distance_pc, a_v_mag)

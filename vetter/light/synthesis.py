@@ -67,18 +67,21 @@ class _Spectra:
         self.weights = columns.weights[:, part] / columns.zero_flux[:, None]
         self.dimming = columns.dimming[part]
 
-    def dimmed_weights(self, a_v_mag: FloatArray, column: slice, part: slice) -> FloatArray:
-        """Return weights (nw, k * n_av) with the dust folded in, so that all integrals are one matrix product."""
-        dust = 10.0 ** (-0.4 * a_v_mag[:, None] * self.dimming[part])
-        return (self.weights[column, None, part] * dust).reshape(-1, dust.shape[1]).T
+    def part_of(self, column: int) -> slice:
+        """Return the wavelengths that one column looks at."""
+        used = np.flatnonzero(self.weights[column])
+        return slice(used[0], used[-1] + 1)
+
+    def dimmed_weights(self, a_v_mag: FloatArray, column: int, part: slice) -> FloatArray:
+        """Return one column's weights (nw, n_av) with the dust folded in: an integral is then one product."""
+        return (self.weights[column, part] * 10.0 ** (-0.4 * a_v_mag[:, None] * self.dimming[part])).T
 
     def column_magnitudes(self, column: int, ln_teff: FloatArray, logg: FloatArray, a_v_mag: FloatArray) -> FloatArray:
         """Return one column's magnitudes (m, ng, n_av) at any (m,) ``ln_teff`` and (ng,) ``logg`` inside the table."""
-        used = np.flatnonzero(self.weights[column])
-        part = slice(used[0], used[-1] + 1)
+        part = self.part_of(column)
         ln_flux = _interpolate(self.ln_teff, self.ln_flux[:, :, part], ln_teff, axis=0)
         flux = np.exp(_interpolate(self.logg, ln_flux, logg, axis=1))
-        return _magnitude(flux @ self.dimmed_weights(a_v_mag, slice(column, column + 1), part))
+        return _magnitude(flux @ self.dimmed_weights(a_v_mag, column, part))
 
 
 def _magnitude(mean_flux: FloatArray) -> FloatArray:
@@ -151,23 +154,20 @@ def _refined_columns(spectra: _Spectra, a_v_mag: FloatArray) -> list[tuple[Float
     """Return (ln_teff, logg, magnitudes (nt, ng, n_av)) of every column, each on its own nodes.
 
     Interpolating magnitudes is not interpolating spectra; half-way between nodes the difference is largest. It is
-    measured there without dust and with the most of it, and cells that miss too much are split.
+    measured there without dust and with the most of it, and cells that miss too much are split. One column at a time:
+    each looks at a small part of the spectra, and products this small stay on one thread, where those of all columns
+    at once would wait for threads (seconds, on a busy machine).
     """
-    k, n_av = len(spectra.weights), len(a_v_mag)
-    everything = slice(None)
     flux = np.exp(spectra.ln_flux, dtype=float)
-    table_mag = _magnitude(flux @ spectra.dimmed_weights(a_v_mag, everything, everything))
-    table_mag = table_mag.reshape(*flux.shape[:2], k, n_av)
-    ends = spectra.dimmed_weights(a_v_mag[[0, -1]], everything, everything)
-    ends_mag = table_mag[..., [0, -1]].reshape(*flux.shape[:2], -1)
-    along_teff, along_logg = (
-        miss.reshape(*miss.shape[:2], k, 2).max(axis=3)
-        for miss in (_mid_cell_miss(flux, ends, ends_mag, axis) for axis in (0, 1))
-    )
-    return [
-        _refined_column(spectra, j, table_mag[:, :, j], (along_teff[:, :, j], along_logg[:, :, j]), a_v_mag)
-        for j in range(k)
-    ]
+    refined = []
+    for column in range(len(spectra.weights)):
+        part = spectra.part_of(column)
+        seen, weights = flux[:, :, part], spectra.dimmed_weights(a_v_mag, column, part)
+        table_mag = _magnitude(seen @ weights)
+        ends, ends_mag = weights[:, [0, -1]], table_mag[..., [0, -1]]
+        along_teff, along_logg = (_mid_cell_miss(seen, ends, ends_mag, axis).max(axis=2) for axis in (0, 1))
+        refined.append(_refined_column(spectra, column, table_mag, (along_teff, along_logg), a_v_mag))
+    return refined
 
 
 def magnitude_grid(atmospheres: Atmospheres, columns: Columns, a_v_max_mag: float) -> MagnitudeGrid:

@@ -103,14 +103,38 @@ class ModelErrorTable:
 
 
 @dataclass(frozen=True, eq=False)
+class MetallicityTable:
+    """What metallicity does to the magnitudes of some bands.
+
+    Attributes
+    ----------
+    teff_k, logg, feh : (nt,), (ng,), (nf,) ascending; ``feh`` holds 0
+    bands : canonical identifiers
+    difference_mag : (nt, ng, nf, nb) magnitude minus that of a solar star of the same Teff, log g and radius
+    """
+
+    teff_k: FloatArray
+    logg: FloatArray
+    feh: FloatArray
+    bands: tuple[str, ...]
+    difference_mag: NDArray[np.float32]
+
+
+@dataclass(frozen=True, eq=False)
 class LightTables:
-    """Everything the light engine is built from."""
+    """Everything the light engine is built from.
+
+    ``metallicity`` corrects solar atmospheres; None where there is nothing to correct them with. ``slices`` holds the
+    atmospheres of a grid with a metallicity axis, ([Fe/H], atmospheres) ascending; empty for solar atmospheres only.
+    """
 
     atmospheres: Atmospheres
     passbands: Mapping[str, Passband]
     white_dwarfs: WhiteDwarfTable
     dust: DustTable
     model_errors: ModelErrorTable
+    metallicity: MetallicityTable | None = None
+    slices: tuple[tuple[float, Atmospheres], ...] = ()
 
 
 def _arrays(folder: Traversable, name: str) -> dict[str, NDArray[Any]]:
@@ -159,6 +183,14 @@ def _read_model_errors(folder: Traversable) -> ModelErrorTable:
     )
 
 
+def _read_metallicity(folder: Traversable) -> MetallicityTable | None:
+    if not (folder / "metallicity.npz").is_file():
+        return None
+    arrays = _arrays(folder, "metallicity.npz")
+    bands = tuple(str(name) for name in arrays.pop("bands"))
+    return MetallicityTable(bands=bands, **arrays)
+
+
 def read_tables(folder: Traversable) -> LightTables:
     """Read all tables of light from a folder of the shipped form (see ``grids/README.md``).
 
@@ -176,6 +208,7 @@ def read_tables(folder: Traversable) -> LightTables:
         ),
         dust=DustTable(**_arrays(folder, "extinction.npz")),
         model_errors=_read_model_errors(folder),
+        metallicity=_read_metallicity(folder),
     )
 
 

@@ -49,8 +49,11 @@ def column_magnitudes(
     ln_flux = ln_zero - 0.4 * np.log(10.0) * table.surface_mag[:, :, order]
 
     planck = surface_planck(wavelength_angstrom, table.teff_k[:, None])
-    ln_planck = np.log(planck @ np.array([band.weights for band in tabulated]).T)[:, None]
-    ln_column_planck = np.log(planck @ columns.weights.T)[:, None]
+    # Sums written out: as matrix products they would start threads, which cost more than they save.
+    ln_planck, ln_column_planck = (
+        np.log(np.einsum("tw,kw->tk", planck, weights))[:, None]
+        for weights in (np.array([band.weights for band in tabulated]), columns.weights)
+    )
     excess = ln_flux - ln_planck
     ln_pivot, ln_wanted = np.log([band.pivot_angstrom for band in tabulated]), np.log(columns.pivot_angstrom)
     ln_column = np.repeat(ln_column_planck, len(table.logg), axis=1)
