@@ -8,16 +8,17 @@ from vetter.results.verdicts import Driver, ScenarioVerdict, Verdicts, headline
 
 WIDE = 120
 NARROW = 80
+WIDE_FROM = 112  # below, the column of reasons would be too narrow to read
 DRIVERS_SHOWN = 2
 
 
 def render(verdicts: Verdicts, width: int = WIDE) -> str:
-    """Return the whole report for a terminal of ``width`` columns (the wide layout needs 100, else the narrow one)."""
+    """Return the whole report for ``width`` columns: from 112 on one row per scenario, else several lines each."""
     width = max(60, min(width, WIDE))
     lines = [*_header(verdicts, width), ""]
     if verdicts.nothing_fits:
         lines += [*_wrapped(headline(verdicts), width), ""]
-    lines += _wide_rows(verdicts, width) if width >= 100 else _narrow_rows(verdicts, width)
+    lines += _wide_rows(verdicts, width) if width >= WIDE_FROM else _narrow_rows(verdicts, width)
     if not verdicts.nothing_fits:
         lines += ["", *_wrapped(headline(verdicts), width)]
     lines += ["", "Cautions"]
@@ -49,12 +50,13 @@ def _header(verdicts: Verdicts, width: int) -> list[str]:
 
 def _wide_rows(verdicts: Verdicts, width: int) -> list[str]:
     """One row per scenario; long reasons are continued under their own column."""
-    heads = ("explanation", "verdict", "sigma", "companion (Msun)", "ln Z", "carried by (sigma without)")
-    widths = (36, 11, 5, 15, 17)
+    widths = (36, 11, 5, 16, 16)
     last = width - sum(widths) - 2 * len(widths)
-    lines = [_row(heads, widths), "-" * width]
+    above = ("", "", "", "companion", "", "carried by")
+    heads = ("explanation", "verdict", "sigma", "(Msun)", "ln Z", "(sigma without)")
+    lines = [_row(above, widths), _row(heads, widths), "-" * width]
     for scenario in verdicts.scenarios:
-        reason = textwrap.wrap(_reason(scenario), last) or [""]
+        reason = textwrap.wrap(_reason(scenario), last, break_on_hyphens=False) or [""]
         cells = (scenario.title, scenario.verdict, _sigma(scenario), _mass(scenario), _evidence(scenario), reason[0])
         lines.append(_row(cells, widths))
         lines += [" " * (sum(widths) + 2 * len(widths)) + rest for rest in reason[1:]]
@@ -124,4 +126,6 @@ def strongest(scenario: ScenarioVerdict) -> list[Driver]:
 
 def _wrapped(text: str, width: int, indent: str = "") -> list[str]:
     """Wrap a paragraph; continuation lines line up under the text after the indent."""
-    return textwrap.wrap(text, width, initial_indent=indent, subsequent_indent=" " * len(indent))
+    return textwrap.wrap(
+        text, width, initial_indent=indent, subsequent_indent=" " * len(indent), break_on_hyphens=False
+    )
