@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+import os
 import shutil
 import sys
 from collections.abc import Callable
@@ -16,6 +17,10 @@ from vetter.errors import InputError
 if TYPE_CHECKING:
     from vetter.results.verdicts import Verdicts
     from vetter.system.model import System
+
+# The matrices here are small: threads of the linear algebra library would only wait for each other.
+for variable in ("OPENBLAS_NUM_THREADS", "MKL_NUM_THREADS", "OMP_NUM_THREADS"):
+    os.environ.setdefault(variable, "1")
 
 F = TypeVar("F", bound=Callable[..., Any])
 

@@ -95,7 +95,7 @@ def evaluate(
     settings : precision of the sampler
     progress : called with the title of each scenario before it runs
 
-    Raises InputError for an unknown scenario, or when nothing weighs the companion.
+    Raises InputError for an unknown scenario, or when too few epoch velocities are all that weighs the companion.
     """
     from vetter.results.compare import compare
 
@@ -111,7 +111,7 @@ def evaluate(
 def prepare(system: System) -> tuple[Context, list[Observation]]:
     """Return the context and the observations of a system; K1 comes from its epoch velocities where it was not given.
 
-    Raises InputError when nothing weighs the companion.
+    Raises InputError when too few epoch velocities are all that weighs the companion.
     """
     from vetter.observations.base import registered
     from vetter.observations.velocities import orbit_with_velocities

@@ -201,15 +201,16 @@ def _adapt(
         x = mixture.draw(settings.rung_points, rng)
         ln_target = _evaluate(problem, x) + _ln_normal(x)
         evaluations += x.shape[0]
-        efficiency = diagnostics.effective_sample_size(ln_target - mixture.ln_density(x)) / x.shape[0]
+        ln_proposed = mixture.ln_density(x)
+        efficiency = diagnostics.effective_sample_size(ln_target - ln_proposed) / x.shape[0]
         if efficiency > best_efficiency:
             best, best_efficiency, best_rung = mixture, efficiency, number
         if efficiency > 0.5 or 0.15 < efficiency < 1.15 * previous or number > best_rung + settings.patience:
             break
         previous = efficiency
-        rungs = [*rungs[1 - POOLED_RUNGS :], _Rung(x, ln_target, mixture)]
+        rungs = _with_new_rung(rungs[1 - POOLED_RUNGS :], _Rung(x, ln_target, mixture, (ln_proposed,)))
         points = np.concatenate([rung.x for rung in rungs])
-        weights = _truncated(_flattened(_pooled_ln_weights(rungs, points)))
+        weights = _truncated(_flattened(np.concatenate([rung.ln_weights for rung in rungs])))
         if np.count_nonzero(weights) <= x.shape[1]:
             continue
         mixture = student.with_wide_component(student.fit(points, weights, settings.components, rng), points, weights)
@@ -217,18 +218,26 @@ def _adapt(
 
 
 class _Rung(NamedTuple):
-    """Points (n, d), their ln target (n,), and what proposed them."""
+    """Points (n, d), their ln target (n,), what proposed them, and their ln density (n,) under each pooled proposal."""
 
     x: FloatArray
     ln_target: FloatArray
     mixture: student.StudentMixture
+    ln_densities: tuple[FloatArray, ...]
+
+    @property
+    def ln_weights(self) -> FloatArray:
+        """Ln weights of the points under the mean of the pooled proposals."""
+        mean = np.logaddexp.reduce(self.ln_densities) - np.log(len(self.ln_densities))
+        return np.asarray(self.ln_target - mean)
 
 
-def _pooled_ln_weights(rungs: list[_Rung], points: FloatArray) -> FloatArray:
-    """Ln weights of the points of all rungs together, under the mean of their proposals."""
-    ln_target = np.concatenate([rung.ln_target for rung in rungs])
-    ln_density = np.logaddexp.reduce([rung.mixture.ln_density(points) for rung in rungs]) - np.log(len(rungs))
-    return np.asarray(ln_target - ln_density)
+def _with_new_rung(rungs: list[_Rung], new: _Rung) -> list[_Rung]:
+    """Return the kept rungs and the new one, every point weighed under every proposal; known densities are kept."""
+    kept = len(rungs)
+    known = [r._replace(ln_densities=(*r.ln_densities[-kept:], new.mixture.ln_density(r.x))) for r in rungs]
+    ln_densities = (*(rung.mixture.ln_density(new.x) for rung in rungs), *new.ln_densities)
+    return [*known, new._replace(ln_densities=ln_densities)]
 
 
 def _flattened(ln_weights: FloatArray) -> FloatArray:

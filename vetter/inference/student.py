@@ -67,8 +67,11 @@ class StudentMixture:
     def distance2(self, x: FloatArray) -> FloatArray:
         """Return squared Mahalanobis distances (n, k) of points ``x`` (n, d) from each component."""
         unfactor = np.linalg.inv(self.factor)
-        columns = [((x - mean) @ matrix.T) for mean, matrix in zip(self.mean, unfactor, strict=True)]
-        return np.stack([np.einsum("ij,ij->i", white, white) for white in columns], axis=1)
+        distance2 = np.empty((x.shape[0], self.share.size))
+        for k, (mean, matrix) in enumerate(zip(self.mean, unfactor, strict=True)):
+            white = (x - mean) @ matrix.T
+            np.einsum("ij,ij->i", white, white, out=distance2[:, k])
+        return distance2
 
     def ln_density(self, x: FloatArray) -> FloatArray:
         """Return ln density (n,) at points ``x`` (n, d)."""
@@ -101,20 +104,25 @@ def fit(x: FloatArray, weights: FloatArray, components: int, rng: np.random.Gene
     """Fit a mixture to points ``x`` (n, d) with weights (n,) that sum to one.
 
     Starts from the points that are farthest apart among the weighty ones and runs expectation-maximisation for
-    the t mixture with fixed degrees of freedom (Peel & McLachlan 2000, Statistics and Computing 10, 339, eqs. 16-20).
+    the t mixture with fixed degrees of freedom (Peel & McLachlan 2000, Statistics and Computing 10, 339, eqs. 16-20),
+    in coordinates in which the points as a whole have unit covariance.
     """
     if np.count_nonzero(weights) > MOST_POINTS:
         x, weights = _thinned(x, weights, rng)
     keep = weights > 0.0
     x, weights = x[keep], weights[keep] / weights[keep].sum()
-    _, covariance = _weighted_moments(x, weights)
+    middle, covariance = _weighted_moments(x, weights)
+    factor = np.linalg.cholesky(covariance)
+    white = np.linalg.solve(factor, (x - middle).T).T
     effective = 1.0 / np.sum(weights**2)
     components = max(1, min(components, int(effective / (3 * x.shape[1]))))
-    centres = _spread_out_points(x, weights, covariance, components, rng)
-    mixture = from_moments(np.full(components, 1.0 / components), centres, np.stack([0.3 * covariance] * components))
+    centres = _spread_out_points(white, weights, components, rng)
+    unit = np.eye(x.shape[1])
+    mixture = from_moments(np.full(components, 1.0 / components), centres, np.stack([0.3 * unit] * components))
+    products = _products(white)
     for _ in range(EM_STEPS if components > 1 else 2):
-        mixture = _em_step(mixture, x, weights, covariance)
-    return mixture
+        mixture = _em_step(mixture, products, weights)
+    return StudentMixture(mixture.share, middle + mixture.mean @ factor.T, factor @ mixture.factor)
 
 
 def _thinned(x: FloatArray, weights: FloatArray, rng: np.random.Generator) -> tuple[FloatArray, FloatArray]:
@@ -125,27 +133,55 @@ def _thinned(x: FloatArray, weights: FloatArray, rng: np.random.Generator) -> tu
     return x[rows], counts / MOST_POINTS
 
 
-def _em_step(mixture: StudentMixture, x: FloatArray, weights: FloatArray, overall: FloatArray) -> StudentMixture:
+def _products(white: FloatArray) -> FloatArray:
+    """Return 1, the coordinates and their products (n, 1 + d + d(d+1)/2) of points (n, d).
+
+    Squared distances from any ellipsoid are linear in them, and so are second moments: each is one matrix product.
+    """
+    first, second = np.triu_indices(white.shape[1])
+    return np.concatenate([np.ones((white.shape[0], 1)), white, white[:, first] * white[:, second]], axis=1)
+
+
+def _em_step(mixture: StudentMixture, products: FloatArray, weights: FloatArray) -> StudentMixture:
     """One expectation-maximisation step; a component that starves is dropped."""
-    distance2 = mixture.distance2(x)
+    d = mixture.dimension
+    distance2 = np.maximum(products @ _quadratic_forms(mixture), 0.0)
     parts = mixture.ln_components(distance2)
     responsibility = np.exp(parts - parts.max(axis=1, keepdims=True))
     responsibility *= (weights / responsibility.sum(axis=1))[:, None]
-    closeness = (DEGREES_OF_FREEDOM + x.shape[1]) / (DEGREES_OF_FREEDOM + distance2)
-    effective = responsibility.sum(axis=0) ** 2 / np.maximum((responsibility**2).sum(axis=0), 1e-300)
-    alive = (responsibility.sum(axis=0) > 1e-3) & (effective > 1.5 * x.shape[1])
+    share = responsibility.sum(axis=0)
+    effective = share**2 / np.maximum((responsibility**2).sum(axis=0), 1e-300)
+    alive = (share > 1e-3) & (effective > 1.5 * d)
     if not alive.any():
-        return from_moments(np.ones(1), (weights @ x)[None], overall[None])
-    share, means, covariances = [], [], []
-    for k in np.flatnonzero(alive):
-        pull = responsibility[:, k] * closeness[:, k]
-        centre = pull @ x / pull.sum()
-        offset = x - centre
-        scatter = (offset * pull[:, None]).T @ offset / responsibility[:, k].sum()
-        share.append(responsibility[:, k].sum())
-        means.append(centre)
-        covariances.append(scatter + 1e-3 * np.diag(np.diagonal(scatter)) + 1e-8 * overall + 1e-14 * np.eye(x.shape[1]))
-    return from_moments(np.array(share), np.array(means), np.array(covariances))
+        return from_moments(np.ones(1), np.zeros((1, d)), np.eye(d)[None])
+    pull = responsibility * (DEGREES_OF_FREEDOM + d) / (DEGREES_OF_FREEDOM + distance2)
+    moments = (pull.T @ products)[alive]
+    total = moments[:, :1]
+    centre = moments[:, 1 : d + 1] / total
+    scatter = _symmetric(moments[:, d + 1 :], d) - np.einsum("ki,kj->kij", total * centre, centre)
+    scatter /= share[alive, None, None]
+    scatter[:, np.arange(d), np.arange(d)] *= 1.0 + 1e-3
+    return from_moments(share[alive], centre, scatter + 1e-8 * np.eye(d))
+
+
+def _quadratic_forms(mixture: StudentMixture) -> FloatArray:
+    """Return the coefficients (1 + d + d(d+1)/2, k) of each component's squared distance over :func:`_products`."""
+    unfactor = np.linalg.inv(mixture.factor)
+    precision = np.einsum("kij,kil->kjl", unfactor, unfactor)
+    first, second = np.triu_indices(mixture.dimension)
+    twice = np.where(first == second, 1.0, 2.0)
+    towards = np.einsum("kij,kj->ki", precision, mixture.mean)
+    constant = np.einsum("ki,ki->k", towards, mixture.mean)
+    return np.concatenate([constant[:, None], -2.0 * towards, twice * precision[:, first, second]], axis=1).T
+
+
+def _symmetric(upper: FloatArray, d: int) -> FloatArray:
+    """Return symmetric matrices (k, d, d) from their upper triangles (k, d(d+1)/2)."""
+    matrices = np.zeros((upper.shape[0], d, d))
+    first, second = np.triu_indices(d)
+    matrices[:, first, second] = upper
+    matrices[:, second, first] = upper
+    return matrices
 
 
 def _weighted_moments(x: FloatArray, weights: FloatArray) -> tuple[FloatArray, FloatArray]:
@@ -156,19 +192,16 @@ def _weighted_moments(x: FloatArray, weights: FloatArray) -> tuple[FloatArray, F
     return mean, covariance + 1e-3 * np.diag(np.diagonal(covariance)) + 1e-12 * np.eye(x.shape[1])
 
 
-def _spread_out_points(
-    x: FloatArray, weights: FloatArray, covariance: FloatArray, count: int, rng: np.random.Generator
-) -> FloatArray:
+def _spread_out_points(white: FloatArray, weights: FloatArray, count: int, rng: np.random.Generator) -> FloatArray:
     """Choose starting centres by weight times squared distance to the nearest one (Arthur & Vassilvitskii 2007)."""
-    white = np.linalg.solve(np.linalg.cholesky(covariance), x.T).T
     chosen = [int(np.argmax(weights))]
-    nearest2 = np.full(x.shape[0], np.inf)
+    nearest2 = np.full(white.shape[0], np.inf)
     while len(chosen) < count:
         nearest2 = np.minimum(nearest2, np.sum((white - white[chosen[-1]]) ** 2, axis=1))
         probability = weights * np.minimum(nearest2, 50.0)
         if probability.sum() <= 0.0:
             break
-        chosen.append(int(rng.choice(x.shape[0], p=probability / probability.sum())))
-    centres = x[chosen]
+        chosen.append(int(rng.choice(white.shape[0], p=probability / probability.sum())))
+    centres = white[chosen]
     missing = count - len(chosen)
     return np.vstack([centres, np.repeat(centres[:1], missing, axis=0)])
