@@ -172,7 +172,7 @@ def standard_residuals(
     used = [
         s
         for s in STANDARDS.values()
-        if s.kind == "star" and s.logg >= LOGG_GIANT_BELOW and abs(s.feh) <= STANDARD_WITHIN_DEX and s.teff_k > 3000.0
+        if s.kind == "star" and s.logg >= LOGG_GIANT_BELOW and abs(s.feh) <= STANDARD_WITHIN_DEX
     ]
     blue = np.array(pivots_angstrom) < _CLASS_ENDS_ANGSTROM[0]
     rows = []
@@ -220,6 +220,9 @@ def build_model_error(
         by_sequence = windowed_rms(star_teff, residuals, node)
         both = np.fmax(by_sequence, by_standards)
         start = np.array([first_found_mag(pivot, node) for pivot in pivots_angstrom])
+        # One M dwarf does not measure how much M dwarfs scatter: alone it may raise an error, not lower it.
+        alone = np.isnan(by_sequence) & (node < COOL_DWARF_BELOW_K)
+        both = np.where(alone & np.isfinite(both), np.fmax(both, start), both)
         if node < COOL_DWARF_BELOW_K:
             both = np.maximum(both, COOL_SHARE * start)
         ultraviolet = np.array(pivots_angstrom) < _NUV[0]

@@ -12,13 +12,8 @@ from vetter.light import Component, LightEngine, reference
 from vetter.light.magnitude_grid import CHUNK
 from vetter.light.tables import load_tables
 
-BANDS = [
-    "Generic/Johnson.U",
-    "Generic/Johnson.B",
-    "Generic/Johnson.V",
-    "Generic/Cousins.R",
-    "Generic/Cousins.I",
-    "SLOAN/SDSS.u",
+BANDS = list(load_tables().passbands)
+FOURTEEN = [
     "SLOAN/SDSS.g",
     "SLOAN/SDSS.r",
     "SLOAN/SDSS.i",
@@ -96,6 +91,7 @@ def numpy_bound_seconds(engine: LightEngine, n_stars: int) -> float:
 @pytest.mark.benchmark
 @pytest.mark.parametrize("feh", [0.0, -0.5])
 def test_star_bands_per_second(feh: float) -> None:
+    """The whole table of bands on one core."""
     n = 100_000
     generator = np.random.default_rng(0)
     teff_k = np.exp(generator.uniform(np.log(2500.0), np.log(40000.0), n))
@@ -104,9 +100,10 @@ def test_star_bands_per_second(feh: float) -> None:
     engine = LightEngine.build(BANDS, a_v_max_mag=3.0)
     seconds = best_seconds(lambda: engine.magnitudes(component, 500.0, a_v))
     rate = n * len(BANDS) / seconds
-    slow = synphot_loop_rate(5)
+    slow = synphot_loop_rate(2)
     bound = seconds / numpy_bound_seconds(engine, n)
-    words = f"light engine, [Fe/H] {feh:g}: {rate:.3g} star-bands/s, synphot loop {slow:.3g}, ratio {rate / slow:.0f}"
+    words = f"light engine, {len(BANDS)} bands, [Fe/H] {feh:g}: {rate:.3g} star-bands/s, "
+    words += f"synphot loop {slow:.3g}, ratio {rate / slow:.0f}"
     print(f"\n{words}; {bound:.2f} times the numpy bound")
     assert rate >= 2e6
     assert rate / slow >= 1000.0
@@ -117,7 +114,7 @@ def test_star_bands_per_second(feh: float) -> None:
 def test_build() -> None:
     """Fourteen bands and two windows, tables already read."""
     windows = [(480.0, 520.0), (640.0, 660.0)]
-    seconds = best_seconds(lambda: LightEngine.build(BANDS[6:], windows))
+    seconds = best_seconds(lambda: LightEngine.build(FOURTEEN, windows))
     print(f"\nbuild {1e3 * seconds:.0f} ms")
     # The goal is 0.1 s on a quiet core; the machine that runs the tests is seldom quiet.
     assert seconds < 0.3

@@ -25,6 +25,18 @@ def test_every_band_is_drawn_and_named() -> None:
             assert max(line.get_ydata()) == 1.0
 
 
+def test_names_do_not_touch() -> None:
+    """In the drawn figure no name overlaps another of its panel."""
+    from matplotlib.backends.backend_agg import FigureCanvasAgg
+
+    figure = bands_figure()
+    canvas = FigureCanvasAgg(figure)
+    canvas.draw()
+    for axes in figure.axes:
+        boxes = [text.get_window_extent() for text in axes.texts]
+        assert not any(a.overlaps(b) for i, a in enumerate(boxes) for b in boxes[:i]), axes.get_ylabel()
+
+
 def test_only_systems_that_are_there_have_a_panel(world: LightTables) -> None:
     assert [axes.get_ylabel() for axes in bands_figure(world).axes] == [
         "GALEX",

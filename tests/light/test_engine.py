@@ -43,6 +43,26 @@ def test_order_of_the_sum(
     assert (total <= np.min(parts, axis=0)).all()
 
 
+@given(KIND, TEFF, LOGG, KIND, TEFF, LOGG, st.floats(0.0, 3.0))
+def test_a_body_of_zero_radius_changes_nothing(
+    engine: LightEngine,
+    make_stars: Make,
+    kind: str,
+    teff_k: float,
+    logg: float,
+    other_kind: str,
+    other_teff_k: float,
+    other_logg: float,
+    a_v: float,
+) -> None:
+    shines = engine.magnitudes(make_stars(teff_k, logg, kind=kind), 100.0, a_v)
+    nothing = engine.magnitudes(make_stars(other_teff_k, other_logg, 0.0, other_kind), 100.0, a_v)
+    assert (nothing == np.inf).all()
+    for parts in ([shines, nothing], [nothing, shines], [nothing, nothing, shines]):
+        assert total_magnitudes(parts) == pytest.approx(shines, abs=1e-12)
+    assert (total_magnitudes([nothing, nothing]) == np.inf).all()
+
+
 @given(KIND, TEFF, LOGG, st.floats(1e-3, 1e3), st.floats(1.0, 1e5), st.floats(0.0, 3.0))
 def test_radius_and_distance(
     engine: LightEngine,
@@ -212,6 +232,11 @@ def test_unknown_kind_of_body() -> None:
     nothing = np.empty(0)
     with pytest.raises(ValueError, match="component kind 'planet'"):
         Component("planet", nothing, nothing, nothing, nothing)
+
+
+def test_a_kind_that_the_tables_lack(engine: LightEngine, make_stars: Make) -> None:
+    with pytest.raises(ValueError, match="these tables have none"):
+        engine.magnitudes(make_stars(12000.0, 8.0, kind="helium_white_dwarf"), 10.0, 0.0)
 
 
 def test_nothing_to_build_or_to_add(world: LightTables) -> None:

@@ -8,6 +8,7 @@ import numpy as np
 import pytest
 
 from vetter.errors import InputError
+from vetter.light import Component, LightEngine
 from vetter.light.report import bands_report, light_report, render_bands, render_light
 from vetter.light.tables import LightTables, load_tables
 
@@ -69,6 +70,15 @@ def test_cautions(world: LightTables) -> None:
     assert "[Fe/H]" in report["cautions"][1]
 
 
+def test_a_star_of_high_gravity_is_a_white_dwarf(world: LightTables) -> None:
+    bands = ["Generic/Johnson.V"]
+    report = light_report([SUN, (20000.0, 8.0, 0.0126)], 10.0, bands=bands, tables=world)
+    body = Component("white_dwarf", *(np.array([value]) for value in (20000.0, 8.0, 0.0, 0.0126)))
+    expected = LightEngine.build(bands, tables=world).magnitudes(body, 10.0, 0.0)[0, 0]
+    assert report["bands"]["Generic/Johnson.V"]["star_mag"][1] == expected
+    assert report["cautions"] == ["star 2 is taken for a white dwarf with a hydrogen surface (log g 7 or more)"]
+
+
 def test_every_fault_at_once() -> None:
     with pytest.raises(InputError) as caught:
         light_report([SUN, (-5.0, 4.0, 0.0, 0.0)], -1.0, float("nan"))
@@ -100,8 +110,14 @@ def test_printed_light(world: LightTables) -> None:
 
 def test_printed_bands_fit_the_screen() -> None:
     lines = render_bands(bands_report()).splitlines()
-    assert len(lines) == len(load_tables().passbands) + 1
     assert max(map(len, lines)) <= 120
+    table, words = lines[: lines.index("")], " ".join(lines[lines.index("") :]).replace(",", "").split()
+    assert len(table) == len(load_tables().passbands) + 1
+    assert all(words.count(line.split()[0]) == 1 for line in table[1:])
+    assert words[words.index("GALEX/GALEX.FUV") - 2 :][:2] == ["speclite", "1.0.0:"]
+    visual = next(line for line in table if line.startswith("Generic/Johnson.V"))
+    assert visual.split()[1:3] == ["Vega", "photon"]
+    assert visual.endswith("Bessell 1990, PASP 102, 1181")
 
 
 @pytest.mark.parametrize("distance_pc", [0.0, float("inf"), float("nan")])
@@ -126,4 +142,11 @@ def test_bands_report_lists_every_band_once() -> None:
     # Bessell & Murphy 2012 (PASP 124, 140): pivot of V 547.9 nm (from memory); f(V = 0) is 3.6e-9 to 1 %.
     assert visual["pivot_nm"] == pytest.approx(548.0, abs=2.0)
     assert visual["zero_flux_vega"] == pytest.approx(3.63e-9, rel=0.04)
+    # Bessell, Castelli & Plez 1998, A&A 333, 231, table A2: V = 0 is 3636 Jy; ours has Vega at 0.03.
+    assert visual["zero_point_jy"] == pytest.approx(3636.0 * 10**0.012, rel=0.01)
+    # Every AB band but the two of SDSS that are off by a constant has the 3631 Jy of the definition.
+    ab = {record["id"]: record["zero_point_jy"] for record in records if record["system"] == "AB"}
+    for band, offset in (("SLOAN/SDSS.u", 0.04), ("SLOAN/SDSS.z", -0.02)):
+        assert ab.pop(band) == pytest.approx(3631.0 * 10 ** (0.4 * offset), rel=1e-4)
+    assert list(ab.values()) == pytest.approx([3631.0] * len(ab), rel=1e-4)
     assert all(isinstance(record["source"], str) and record["reference"] for record in records)

@@ -129,6 +129,10 @@ def test_stars_outside_the_users_own_range_are_not_inside(shelf: Path, collectio
     add_grid(collection, "narrow")
     engine = LightEngine.build(BANDS, grid="narrow")
     assert [bool(engine.inside(star(t, 4.2, 0.0))[0]) for t in (4900.0, 5500.0, 6100.0)] == [False, True, False]
+    # Where it does not reach, the shipped atmospheres stand in, not its own edge.
+    shipped = LightEngine.build(BANDS)
+    for outside in (star(4900.0, 4.2, 0.0), star(3000.0, 5.0, -0.5), star(5500.0, 2.0, 0.0), star(90000.0, 5.0, 0.0)):
+        assert (engine.magnitudes(outside, 10.0, 0.3) == shipped.magnitudes(outside, 10.0, 0.3)).all()
     dwarf = Component("white_dwarf", *(np.array([value]) for value in (12000.0, 8.0, 0.0, 0.012)))
     same = LightEngine.build(BANDS).magnitudes(dwarf, 10.0, 0.0)
     assert engine.magnitudes(dwarf, 10.0, 0.0) == pytest.approx(same, abs=1e-9)
@@ -242,6 +246,19 @@ def test_a_folder_without_a_list(shelf: Path, collection: Path) -> None:
 def test_names_that_cannot_be(shelf: Path, collection: Path, name: str) -> None:
     with pytest.raises(InputError, match="name is"):
         add_grid(collection, name)
+
+
+@pytest.mark.parametrize("content", [b"", b"not an archive", None])
+def test_a_table_that_is_not_one(shelf: Path, content: bytes | None) -> None:
+    shelf.mkdir()
+    if content is None:
+        flux = np.zeros((1, 2, 2, 7))
+        np.savez(shelf / "old.npz", teff_k=[1, 2], logg=[1, 2], feh=[0], ln_flux=flux, filled=flux[..., 0] > 0)
+    else:
+        (shelf / "old.npz").write_bytes(content)
+    for action in (grids_report, lambda: LightEngine.build(BANDS, grid="old")):
+        with pytest.raises(InputError, match=r"old\.npz.*made by this version"):
+            action()
 
 
 def test_unknown_grid_lists_those_there_are(shelf: Path, collection: Path) -> None:

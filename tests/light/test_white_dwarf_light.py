@@ -119,6 +119,33 @@ def test_shipped_dwarf_of_ten_kilokelvin(make_stars: Make) -> None:
     assert blue - visual == pytest.approx(0.15, abs=0.1)
 
 
+TABLES = {"white_dwarf": load_tables().white_dwarfs, "helium_white_dwarf": load_tables().helium_white_dwarfs}
+
+
+@pytest.mark.parametrize("kind", TABLES)
+def test_shipped_magnitudes_come_back_in_every_tabulated_band(kind: str, make_stars: Make) -> None:
+    """Hydrogen and helium surfaces, at every temperature and gravity of the published tables."""
+    table = TABLES[kind]
+    assert table is not None
+    assert len(table.bands) == 29
+    engine = LightEngine.build(table.bands)
+    teff, logg = (axis.ravel() for axis in np.meshgrid(table.teff_k, table.logg, indexing="ij"))
+    found = engine.magnitudes(make_stars(teff, logg, kind=kind), 10.0, 0.0).reshape(table.surface_mag.shape)
+    known = np.isfinite(table.surface_mag)
+    assert known.mean() > 0.99
+    np.testing.assert_allclose(found[known], table.surface_mag[known], atol=1e-9)
+    assert np.isfinite(found).all()
+
+
+def test_a_helium_surface_has_no_balmer_jump(make_stars: Make) -> None:
+    """At 15 kK U-B of a DB is about 0.3 mag bluer than that of a DA, V-I nearly the same (Bedard et al. 2020)."""
+    engine = LightEngine.build(["Generic/Johnson.U", "Generic/Johnson.B", "Generic/Johnson.V", "Generic/Cousins.I"])
+    hydrogen, helium = (engine.magnitudes(make_stars(15000.0, 8.0, kind=kind), 10.0, 0.0)[0] for kind in TABLES)
+    difference = helium - hydrogen
+    assert -0.5 < difference[0] - difference[1] < -0.1
+    assert abs(difference[2] - difference[3]) < 0.1
+
+
 def test_shipped_untabulated_bands_are_near_the_atmospheres(make_stars: Make) -> None:
     """TESS, Hp and UVM2 are interpolated; hot hydrogen atmospheres of log g 5 tell the same colours."""
     bands = ["Generic/Johnson.V", "TESS/TESS.Red", "Hipparcos/Hipparcos.Hp", "Swift/UVOT.UVM2"]

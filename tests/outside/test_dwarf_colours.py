@@ -13,7 +13,7 @@ import pytest
 
 pytest.importorskip("vetter.grids.recipes", reason="the recipes are part of a source checkout only")
 
-from vetter.grids.recipes.residual_table import EDGES_K, cells, render, shipped_photometer
+from vetter.grids.recipes.residual_table import EDGES_K, cells, main, render, shipped_photometer
 from vetter.grids.recipes.sequence import sequence_stars
 
 from vetter.light import Component, LightEngine
@@ -53,6 +53,12 @@ def test_listed_exceptions_are_still_needed(table: dict[str, list[float]]) -> No
     for name, low in WORSE:
         cell = EDGES_K.index(low)
         assert table[name][cell] > FIRST_FOUND[name][cell]
+
+
+def test_one_command_prints_it(table: dict[str, list[float]], capsys: pytest.CaptureFixture[str]) -> None:
+    """``python -m vetter.grids.recipes.residual_table``, as in DEVELOPERS.md."""
+    assert main() == 0
+    assert capsys.readouterr().out == render(table) + "\n"
 
 
 def test_rendered_table_has_a_row_per_range(table: dict[str, list[float]]) -> None:

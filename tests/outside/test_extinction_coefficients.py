@@ -65,27 +65,18 @@ def test_coefficients_are_the_direct_integrals(teff_k: float) -> None:
         assert ratio == pytest.approx(direct[band] / direct[V], abs=0.002), band
 
 
-ULTRAVIOLET = ("GALEX/GALEX.NUV", "Swift/UVOT.UVM2")
-BROAD = (
-    "Generic/Johnson.U",
-    "Generic/Johnson.B",
-    V,
-    "GAIA/GAIA3.G",
-    "GAIA/GAIA3.Grp",
-    "2MASS/2MASS.Ks",
-    "WISE/WISE.W1",
-)
+ULTRAVIOLET = [band.id for band in load_tables().passbands.values() if band.pivot_angstrom < 3000.0]
 
 
-@pytest.mark.parametrize("r_v", [2.5, 3.1, 5.5])
+@pytest.mark.parametrize("r_v", [2.5, 3.1, 4.2, 5.5])
 def test_any_law_up_to_three_magnitudes_of_reddening(r_v: float) -> None:
-    """E(B-V) 0 to 3: 0.01 mag in the optical and infrared, 0.03 in the ultraviolet, against direct integration."""
-    tables, bands = load_tables(), [*ULTRAVIOLET, *BROAD]
+    """Every band, E(B-V) 0 to 3: 0.01 mag optical and infrared, 0.03 ultraviolet, against direct integration."""
+    tables, bands = load_tables(), list(load_tables().passbands)
     engine = LightEngine.build(bands, r_v=r_v, a_v_max_mag=3.0 * r_v)
-    for teff_k in (4200.0, 5750.0, 9000.0, 20000.0):
-        for ebv in (0.05, 0.4, 1.1, 2.3, 3.0):
+    tolerance = np.array([0.03 if band in ULTRAVIOLET else 0.01 for band in bands])
+    for teff_k in (2800.0, 4200.0, 5750.0, 10400.0, 20000.0, 45000.0):
+        for ebv in (0.05, 0.4, 0.95, 2.3, 3.0):
             flux = reference.observed_flux(tables, teff_k, 4.5, 1.0, 10.0, ebv * r_v, r_v)
-            found = engine.magnitudes(star(teff_k), 10.0, ebv * r_v)[0]
-            for band, magnitude in zip(bands, found, strict=True):
-                tolerance = 0.03 if band in ULTRAVIOLET else 0.01
-                assert magnitude == pytest.approx(reference.magnitude(tables, band, flux), abs=tolerance), (band, ebv)
+            direct = np.array([reference.magnitude(tables, band, flux) for band in bands])
+            miss = np.abs(engine.magnitudes(star(teff_k), 10.0, ebv * r_v)[0] - direct)
+            assert (miss <= tolerance).all(), (teff_k, ebv, bands[int(np.argmax(miss / tolerance))])

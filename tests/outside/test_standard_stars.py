@@ -17,7 +17,7 @@ import pytest
 
 pytest.importorskip("vetter.grids.recipes", reason="the recipes are part of a source checkout only")
 
-from vetter.grids.recipes.standard_stars import STANDARDS
+from vetter.grids.recipes.standard_stars import STANDARDS, Standard
 
 from vetter.light import Component, LightEngine
 
@@ -154,7 +154,12 @@ def test_spectrum_of_the_sun(band: str) -> None:
 # The tables against the standard stars: published Teff, log g, [Fe/H] and E(B-V), nothing fitted but the angular
 # diameter, which V fixes (J where there is no V).
 R_V = 3.1
-STARS = [name for name, standard in STANDARDS.items() if np.isfinite(standard.teff_k)]
+# Vega turns fast and is seen pole-on: no one temperature is right. 9400 K, 3.90, -0.5 is that of the CALSPEC spectrum
+# (Bohlin 2014, AJ 147, 127; from memory); with the 9550 K, 3.95 of Castelli & Kurucz 1994, A&A 281, 817, all 44 bands
+# are within the stored errors instead of 39.
+PUBLISHED = {**STANDARDS, "vega_stis": Standard("alpha_lyr_stis_011", 9400.0, 3.90, -0.5)}
+STARS = [name for name, standard in PUBLISHED.items() if np.isfinite(standard.teff_k)]
+NAMED = ("sun", "p330e", "bd17", "vb8", "gd71", "gd153", "g191b2b", "vega_stis")
 
 
 @cache
@@ -165,7 +170,7 @@ def engine() -> LightEngine:
 @cache
 def residuals(star: str) -> dict[str, float]:
     """Table minus spectrum in every band that the measured spectrum covers, relative to the anchor (left out)."""
-    standard = STANDARDS[star]
+    standard = PUBLISHED[star]
     values = (np.array([value]) for value in (standard.teff_k, standard.logg, standard.feh, 1.0))
     computed = engine().magnitudes(Component(standard.kind, *values), 10.0, R_V * standard.ebv_mag)[0]
     reach = spectra()[f"{star}_wavelength"][[0, -1]]
@@ -180,12 +185,13 @@ def anchor_of(covered: Iterable[str]) -> str:
 
 
 def stored_error(star: str, band: str) -> float:
-    standard = STANDARDS[star]
+    standard = PUBLISHED[star]
     return float(engine().model_error_mag(band, standard.teff_k, standard.logg, standard.feh))
 
 
 def test_there_are_enough_standards() -> None:
     assert len(STARS) >= 20
+    assert set(NAMED) <= set(STARS)
     assert sum(len(residuals(star)) for star in STARS) >= 450
 
 
@@ -193,6 +199,19 @@ def test_standard_stars_within_the_stored_errors() -> None:
     """At least 95 % of all bands within the stored error of the band alone, though the anchor has an error too."""
     within = [abs(value) <= stored_error(star, band) for star in STARS for band, value in residuals(star).items()]
     assert np.mean(within) >= 0.95
+
+
+def test_the_named_standards_within_the_stored_errors() -> None:
+    """The eight on their own; VB 8, one M7 dwarf, is 0.08-0.18 mag off the mean sequence and shapes its errors."""
+    within = [abs(value) <= stored_error(star, band) for star in NAMED for band, value in residuals(star).items()]
+    assert len(within) > 150
+    assert np.mean(within) >= 0.95
+
+
+@pytest.mark.parametrize("star", STARS)
+def test_most_bands_of_every_standard(star: str) -> None:
+    within = [abs(value) <= stored_error(star, band) for band, value in residuals(star).items()]
+    assert np.mean(within) > 0.6
 
 
 @pytest.mark.parametrize("star", STARS)

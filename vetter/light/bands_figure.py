@@ -31,6 +31,8 @@ LABELS = {"TESS/TESS.Red": "TESS"}
 HUES = ("#0072b2", "#d55e00", "#009e73", "#aa4499", "#6a6a00", "#8c2d04")
 SHOWN_ABOVE = 0.01
 LEVELS = (1.06, 1.36, 1.66)
+DEX_PER_LETTER = 0.022
+"""Width of a letter of the names on the axis of wavelengths."""
 TICKS_UM = (0.15, 0.2, 0.3, 0.5, 0.7, 1.0, 1.5, 2.0, 3.0, 5.0, 10.0, 20.0)
 
 
@@ -57,8 +59,10 @@ def bands_figure(tables: LightTables | None = None) -> Figure:
 
 
 def _draw(axes: Axes, title: str, group: Sequence[Passband]) -> None:
-    """Draw one panel: each curve named above its pivot wavelength, the names on three levels."""
-    for place, band in enumerate(group):
+    """Draw one panel: each curve named above its pivot wavelength."""
+    names = [LABELS.get(band.id, band.id.rsplit(".", 1)[-1]) for band in group]
+    levels = _levels([np.log10(band.pivot_angstrom) for band in group], names)
+    for place, (band, name, level) in enumerate(zip(group, names, levels, strict=True)):
         hue = HUES[place % len(HUES)]
         curve = band.throughput / band.throughput.max()
         inside = np.flatnonzero(curve > SHOWN_ABOVE)
@@ -66,14 +70,26 @@ def _draw(axes: Axes, title: str, group: Sequence[Passband]) -> None:
         micron = band.wavelength_angstrom[part] / 1e4
         axes.fill_between(micron, curve[part], color=hue, alpha=0.15, linewidth=0)
         axes.plot(micron, curve[part], color=hue, linewidth=1.1)
-        name = LABELS.get(band.id, band.id.rsplit(".", 1)[-1])
-        level = LEVELS[place % len(LEVELS)]
         axes.text(band.pivot_angstrom / 1e4, level, name, color=hue, fontsize=8, ha="center", va="bottom")
-    axes.set_ylim(0.0, 2.0)
+    axes.grid(axis="x", color="0.9", linewidth=0.6)
+    axes.set_axisbelow(True)
+    axes.set_ylim(0.0, max(levels) + 0.3)
     axes.set_yticks([0.0, 1.0])
     axes.tick_params(labelsize=8)
     axes.spines[["top", "right"]].set_visible(False)
     axes.set_ylabel(title, rotation=0, fontsize=9, ha="right", va="center")
+
+
+def _levels(log_pivots: Sequence[float], names: Sequence[str]) -> list[float]:
+    """Return the height of each name: the lowest of three at which it does not touch the names before it."""
+    ends = dict.fromkeys(LEVELS, -np.inf)
+    heights = []
+    for centre, name in zip(log_pivots, names, strict=True):
+        half = 0.5 * DEX_PER_LETTER * (len(name) + 1)
+        height = next((level for level in LEVELS if ends[level] <= centre - half), LEVELS[-1])
+        ends[height] = centre + half
+        heights.append(height)
+    return heights
 
 
 def write_bands_figure(path: Path, tables: LightTables | None = None) -> None:

@@ -17,7 +17,7 @@ from vetter.light.metallicity import MetallicityCorrection, StarGrid, follows_me
 from vetter.light.passbands import custom_passband, find_band, window_weights
 from vetter.light.synthesis import Columns, magnitude_grid
 from vetter.light.tables import FloatArray, LightTables, ModelErrorTable, Passband, load_tables
-from vetter.light.user_grids import with_user_grid
+from vetter.light.user_grids import SHIPPED, with_user_grid
 from vetter.light.white_dwarfs import column_magnitudes, white_dwarf_grid, with_hot_end
 
 if TYPE_CHECKING:
@@ -25,7 +25,7 @@ if TYPE_CHECKING:
 
 Window = tuple[float, float]
 
-KINDS = ("star", "white_dwarf")
+KINDS = ("star", "white_dwarf", "helium_white_dwarf")
 MIN_A_V_MAX_MAG = 0.1
 
 
@@ -33,9 +33,10 @@ MIN_A_V_MAX_MAG = 0.1
 class Component:
     """One kind of body, n samples of it; every array has shape (n,).
 
-    ``kind`` is "star" (any photosphere, helium stars too) or "white_dwarf" (hydrogen surface). Units: K, log10 of
-    cm/s2, dex, solar radii. ``feh`` of a star changes its light between 4700 and 10000 A with the shipped atmospheres
-    and everywhere with a grid that has a metallicity axis; elsewhere it only enlarges the model error.
+    ``kind`` is "star" (any photosphere, helium stars too), "white_dwarf" (hydrogen surface, DA) or
+    "helium_white_dwarf" (DB). Units: K, log10 of cm/s2, dex, solar radii; a radius of zero is no light. ``feh`` of a
+    star changes its light between 4700 and 10000 A with the shipped atmospheres and everywhere with a grid that has a
+    metallicity axis; elsewhere it only enlarges the model error.
     """
 
     kind: str
@@ -61,6 +62,7 @@ class LightEngine:
     systems : "Vega" or "AB", one per band
     pivots_angstrom : pivot wavelength per column; the middle for a window
     r_v, a_v_max_mag : shape of the dust law and largest dust column the engine was built for
+    grid : name of the atmospheres
     """
 
     bands: tuple[str, ...]
@@ -69,8 +71,9 @@ class LightEngine:
     pivots_angstrom: tuple[float, ...]
     r_v: float
     a_v_max_mag: float
+    grid: str
     _stars: StarGrid = field(repr=False)
-    _white_dwarfs: MagnitudeGrid = field(repr=False)
+    _white_dwarfs: Mapping[str, MagnitudeGrid] = field(repr=False)
     _passbands: Mapping[str, Passband] = field(repr=False)
     _model_errors: ModelErrorTable = field(repr=False)
 
@@ -99,8 +102,8 @@ class LightEngine:
         tables, R_V outside the law, or a system that a band has no zero point in.
         """
         tables = tables or load_tables()
-        if grid is not None:
-            tables = with_user_grid(tables, grid)
+        grid = SHIPPED if grid is None else grid
+        tables = with_user_grid(tables, grid)
         wavelength = tables.atmospheres.wavelength_angstrom
         known = {**tables.passbands, **{own.id: custom_passband(own, wavelength) for own in passbands}}
         chosen = [find_band(name, known) for name in bands]
@@ -122,7 +125,7 @@ class LightEngine:
         a_v_max_mag = max(float(a_v_max_mag), MIN_A_V_MAX_MAG)
         stars, dwarfs = _grids(tables, columns, names, a_v_max_mag)
         errors = tables.model_errors
-        return cls(names, windows, in_system, tuple(pivots), r_v, a_v_max_mag, stars, dwarfs, known, errors)
+        return cls(names, windows, in_system, tuple(pivots), r_v, a_v_max_mag, grid, stars, dwarfs, known, errors)
 
     def magnitudes(self, component: Component, distance_pc: ArrayLike, a_v_mag: ArrayLike) -> FloatArray:
         """Return apparent magnitudes (n, n_columns) of n bodies at ``distance_pc`` (> 0) behind ``a_v_mag``.
@@ -139,20 +142,27 @@ class LightEngine:
             feh = np.broadcast_to(np.asarray(component.feh, dtype=float), n)
             magnitudes = self._stars.evaluate(component.teff_k, component.logg, feh, a_v)
         else:
-            magnitudes = self._white_dwarfs.evaluate(component.teff_k, component.logg, a_v)
-        dilution = 5.0 * np.log10(np.asarray(distance_pc, dtype=float) / (10.0 * component.radius_rsun))
+            magnitudes = self._white_dwarf_grid(component.kind).evaluate(component.teff_k, component.logg, a_v)
+        with np.errstate(divide="ignore"):
+            dilution = 5.0 * np.log10(np.asarray(distance_pc, dtype=float) / (10.0 * component.radius_rsun))
         magnitudes += np.broadcast_to(dilution, n)[:, None]
         return magnitudes
 
     def inside(self, component: Component) -> NDArray[np.bool_]:
-        """Return (n,) True where the temperature lies within the tables and, for a star, log g >= their least.
+        """Return (n,) True where the tables reach: those of the user's own where the engine was built with them.
 
         Stars above log g 5 count as inside: their light is that of log g 5. White dwarfs of any gravity do too.
         """
-        grid = self._stars.slices[0] if component.kind == "star" else self._white_dwarfs
-        ln_teff = np.log(component.teff_k)
-        warm = (ln_teff >= grid.ln_teff[0]) & (ln_teff <= grid.ln_teff[-1])
-        return np.asarray(warm & ((component.kind == "white_dwarf") | (component.logg >= grid.logg[0])))
+        if component.kind == "star":
+            return self._stars.reaches(component.teff_k, component.logg)
+        grid, ln_teff = self._white_dwarf_grid(component.kind), np.log(component.teff_k)
+        return np.asarray((ln_teff >= grid.ln_teff[0]) & (ln_teff <= grid.ln_teff[-1]))
+
+    def _white_dwarf_grid(self, kind: str) -> MagnitudeGrid:
+        """Return the grid of one kind of white dwarf. Raises ValueError when the tables lack it."""
+        if kind not in self._white_dwarfs:
+            raise ValueError(f"component kind {kind!r}: these tables have none")
+        return self._white_dwarfs[kind]
 
     def model_error_mag(self, band: str, teff_k: ArrayLike, logg: ArrayLike, feh: ArrayLike = 0.0) -> FloatArray:
         """Return the one-sigma error (mag) of a synthetic magnitude in ``band``; the arrays broadcast."""
@@ -170,6 +180,10 @@ class LightEngine:
         return self._stars.correction is not None and follows_metallicity(
             find_band(band, self._passbands).pivot_angstrom
         )
+
+    def zero_flux(self, band: str) -> float:
+        """Return the flux (erg s-1 cm-2 A-1) of magnitude zero in one of the engine's bands, in its system here."""
+        return _zero_flux(self._passbands[band], self.systems[self.bands.index(band)])
 
     def total_magnitudes(self, magnitudes: Sequence[FloatArray]) -> FloatArray:
         """Return the magnitudes (n, k) of the summed light; see :func:`total_magnitudes`."""
@@ -192,26 +206,26 @@ def total_magnitudes(magnitudes: Sequence[FloatArray]) -> FloatArray:
 
 def _grids(
     tables: LightTables, columns: Columns, bands: tuple[str, ...], a_v_max_mag: float
-) -> tuple[StarGrid, MagnitudeGrid]:
-    """Return the grids of stars and of white dwarfs.
-
-    Atmospheres of the user's own end where they end: only the shipped ones are continued to 150 kK.
-    """
+) -> tuple[StarGrid, dict[str, MagnitudeGrid]]:
+    """Return the grids of stars and, by kind, of white dwarfs; where the user's own end, the shipped ones stand in."""
     solar = magnitude_grid(tables.atmospheres, columns, a_v_max_mag)
-    surfaces = column_magnitudes(
-        tables.white_dwarfs, bands, columns, tables.passbands, tables.atmospheres.wavelength_angstrom
-    )
-    dwarfs = white_dwarf_grid(tables.white_dwarfs, surfaces, solar)
-    if tables.slices:
-        slices = tuple(magnitude_grid(part, columns, a_v_max_mag) for _, part in tables.slices)
-        return StarGrid(np.array([feh for feh, _ in tables.slices]), slices), dwarfs
+    wavelength = tables.atmospheres.wavelength_angstrom
+    dwarfs = {
+        kind: white_dwarf_grid(table, column_magnitudes(table, bands, columns, tables.passbands, wavelength), solar)
+        for kind, table in (("white_dwarf", tables.white_dwarfs), ("helium_white_dwarf", tables.helium_white_dwarfs))
+        if table is not None
+    }
     table, names = tables.metallicity, (*bands, *[""] * (len(columns.pivot_angstrom) - len(bands)))
     correction = (
         None
         if table is None
         else MetallicityCorrection.of(table, names, columns.pivot_angstrom.tolist(), tables.passbands)
     )
-    return StarGrid(np.zeros(1), (with_hot_end(solar, dwarfs),), correction), dwarfs
+    shipped = StarGrid(np.zeros(1), (with_hot_end(solar, dwarfs["white_dwarf"]),), correction)
+    if not tables.slices:
+        return shipped, dwarfs
+    slices = tuple(magnitude_grid(part, columns, a_v_max_mag) for _, part in tables.slices)
+    return StarGrid(np.array([feh for feh, _ in tables.slices]), slices, beyond=shipped), dwarfs
 
 
 def _zero_flux(band: Passband, system: str) -> float:

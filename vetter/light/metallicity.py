@@ -102,14 +102,29 @@ class StarGrid:
     feh : (nf,) ascending, dex
     slices : one grid of magnitudes per [Fe/H]
     correction : differences from solar, added to a single solar slice; None where there is nothing to add
+    beyond : the grid that stands in where this one does not reach; None where the nearest edge does
     """
 
     feh: FloatArray
     slices: tuple[MagnitudeGrid, ...]
     correction: MetallicityCorrection | None = None
+    beyond: StarGrid | None = None
+
+    def reaches(self, teff_k: FloatArray, logg: FloatArray) -> NDArray[np.bool_]:
+        """Return (n,) True inside the grid; gravities above 5 count as 5, for no light depends on them."""
+        grid, ln_teff = self.slices[0], np.log(teff_k)
+        warm = (ln_teff >= grid.ln_teff[0]) & (ln_teff <= grid.ln_teff[-1])
+        return np.asarray(warm & (logg >= grid.logg[0]) & (np.minimum(logg, 5.0) <= grid.logg[-1]))
 
     def evaluate(self, teff_k: FloatArray, logg: FloatArray, feh: FloatArray, a_v_mag: FloatArray) -> FloatArray:
-        """Return magnitudes (n, k) from four (n,) arrays; outside the grids the nearest edge stands in."""
+        """Return magnitudes (n, k) from four (n,) arrays; where no grid reaches the nearest edge stands in."""
+        magnitudes = self._evaluate(teff_k, logg, feh, a_v_mag)
+        if self.beyond is not None:
+            out = ~self.reaches(teff_k, logg)
+            magnitudes[out] = self.beyond.evaluate(teff_k[out], logg[out], feh[out], a_v_mag[out])
+        return magnitudes
+
+    def _evaluate(self, teff_k: FloatArray, logg: FloatArray, feh: FloatArray, a_v_mag: FloatArray) -> FloatArray:
         if len(self.slices) == 1:
             magnitudes = self.slices[0].evaluate(teff_k, logg, a_v_mag)
             if self.correction is not None and feh.any():

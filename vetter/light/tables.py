@@ -124,8 +124,9 @@ class MetallicityTable:
 class LightTables:
     """Everything the light engine is built from.
 
-    ``metallicity`` corrects solar atmospheres; None where there is nothing to correct them with. ``slices`` holds the
-    atmospheres of a grid with a metallicity axis, ([Fe/H], atmospheres) ascending; empty for solar atmospheres only.
+    ``white_dwarfs`` have hydrogen surfaces; those of helium are None where a table lacks them. ``metallicity``
+    corrects solar atmospheres; None where there is nothing to correct them with. ``slices`` holds the user's own
+    atmospheres, ([Fe/H], atmospheres) ascending, which are used where they reach; empty without any.
     """
 
     atmospheres: Atmospheres
@@ -135,6 +136,7 @@ class LightTables:
     model_errors: ModelErrorTable
     metallicity: MetallicityTable | None = None
     slices: tuple[tuple[float, Atmospheres], ...] = ()
+    helium_white_dwarfs: WhiteDwarfTable | None = None
 
 
 def _arrays(folder: Traversable, name: str) -> dict[str, NDArray[Any]]:
@@ -183,6 +185,16 @@ def _read_model_errors(folder: Traversable) -> ModelErrorTable:
     )
 
 
+def _white_dwarf_table(arrays: Mapping[str, NDArray[Any]], surface: str) -> WhiteDwarfTable:
+    """Return one surface's table: the arrays whose names begin with ``surface``, "da" or "db"."""
+    return WhiteDwarfTable(
+        teff_k=arrays[f"{surface}_teff_k"],
+        logg=arrays[f"{surface}_logg"],
+        bands=tuple(str(name) for name in arrays[f"{surface}_bands"]),
+        surface_mag=arrays[f"{surface}_surface_mag"],
+    )
+
+
 def _read_metallicity(folder: Traversable) -> MetallicityTable | None:
     if not (folder / "metallicity.npz").is_file():
         return None
@@ -200,15 +212,11 @@ def read_tables(folder: Traversable) -> LightTables:
     return LightTables(
         atmospheres=Atmospheres(**_arrays(folder, "atmospheres.npz")),
         passbands=_read_passbands(folder),
-        white_dwarfs=WhiteDwarfTable(
-            teff_k=white_dwarfs["da_teff_k"],
-            logg=white_dwarfs["da_logg"],
-            bands=tuple(str(name) for name in white_dwarfs["da_bands"]),
-            surface_mag=white_dwarfs["da_surface_mag"],
-        ),
+        white_dwarfs=_white_dwarf_table(white_dwarfs, "da"),
         dust=DustTable(**_arrays(folder, "extinction.npz")),
         model_errors=_read_model_errors(folder),
         metallicity=_read_metallicity(folder),
+        helium_white_dwarfs=_white_dwarf_table(white_dwarfs, "db") if "db_teff_k" in white_dwarfs else None,
     )
 
 

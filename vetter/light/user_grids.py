@@ -13,6 +13,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import replace
 from pathlib import Path
 from typing import Any
+from zipfile import BadZipFile
 
 import numpy as np
 
@@ -22,6 +23,7 @@ from vetter.light.reference import surface_flux
 from vetter.light.tables import Atmospheres, FloatArray, LightTables, load_tables
 
 SHIPPED = "shipped"
+ARRAYS = ("teff_k", "logg", "feh", "ln_flux", "filled")
 COVERED_ANGSTROM = (3500.0, 9000.0)
 """Every spectrum must reach over this range; the rest is continued with the shipped spectrum of its Teff and log g."""
 
@@ -141,13 +143,23 @@ def _continued(node: FloatArray, flux: FloatArray, ends: tuple[float, float], sh
 
 
 def _stored(name: str) -> Mapping[str, Any]:
-    """Return the arrays of one of the user's tables. Raises InputError naming the tables there are."""
+    """Return the arrays of one of the user's tables.
+
+    Raises InputError naming the tables there are, or when the file is not a table that this version made.
+    """
     path = grids_folder() / f"{name}.npz"
     if not path.is_file():
         there = ", ".join([SHIPPED, *own_grids()])
         raise InputError.single("grids", "grid", name, f"one of: {there}", "Make one with `vetter grids add DIR`.")
-    with np.load(path, allow_pickle=False) as archive:
-        return {key: archive[key] for key in archive.files}
+    expected, mend = "a table made by this version of vetter", "Make it again with `vetter grids add DIR`."
+    try:
+        with np.load(path, allow_pickle=False) as archive:
+            stored = {key: archive[key] for key in ARRAYS}
+    except (OSError, ValueError, KeyError, EOFError, AttributeError, BadZipFile) as error:
+        raise InputError.single(str(path), "", None, f"{expected} ({error})", mend) from error
+    if stored["ln_flux"].shape[-1:] != load_tables().atmospheres.wavelength_angstrom.shape:
+        raise InputError.single(str(path), "ln_flux", stored["ln_flux"].shape, expected, mend)
+    return stored
 
 
 def own_grids() -> list[str]:
@@ -157,7 +169,7 @@ def own_grids() -> list[str]:
 
 
 def with_user_grid(tables: LightTables, name: str) -> LightTables:
-    """Return the tables with their atmospheres replaced by the user's own; "shipped" changes nothing.
+    """Return the tables with the user's own atmospheres beside the shipped ones; "shipped" changes nothing.
 
     Raises InputError when there is no table of that name.
     """
@@ -169,8 +181,7 @@ def with_user_grid(tables: LightTables, name: str) -> LightTables:
         (float(feh), Atmospheres(wavelength, stored["teff_k"], stored["logg"], ln_flux, filled))
         for feh, ln_flux, filled in zip(stored["feh"], stored["ln_flux"], stored["filled"], strict=True)
     )
-    solar = min(slices, key=lambda part: abs(part[0]))[1]
-    return replace(tables, atmospheres=solar, slices=slices, metallicity=None)
+    return replace(tables, slices=slices)
 
 
 def _record(name: str, arrays: Mapping[str, Any]) -> dict[str, Any]:

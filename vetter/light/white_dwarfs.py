@@ -1,6 +1,7 @@
 """Light of white dwarfs from the published magnitude tables, and the hot end of the star grid that leans on them.
 
-The tables are those of the Montreal group (Bedard et al. 2020, ApJ 901, 93, and references there), hydrogen surfaces.
+The tables are those of the Montreal group (Bedard et al. 2020, ApJ 901, 93, and references there), for hydrogen (DA)
+and helium (DB) surfaces.
 """
 
 from __future__ import annotations
