@@ -11,9 +11,11 @@ import pytest
 from vetter.errors import InputError
 from vetter.observations.base import registered
 from vetter.observations.orbit import k1_error_km_s
+from vetter.observations.prediction import InnerOrbit
 from vetter.observations.velocities import (
     VelocitiesObservation,
     enough_epochs,
+    epoch_cautions,
     fit_epochs,
     inner_signal_limit,
     orbit_with_velocities,
@@ -104,7 +106,7 @@ def test_few_epochs() -> None:
     few = _velocities(4)
     assert not enough_epochs(few)
     assert VelocitiesObservation.from_system(_system(few), None) is None  # type: ignore[arg-type]
-    with pytest.raises(InputError, match=r"velocities.file is 'rv.ecsv': expected 5 epochs"):
+    with pytest.raises(InputError, match=r"velocities.file is 'rv.ecsv': expected 5 epochs at different times"):
         orbit_with_velocities(_system(few))
     astrometric = _system(few, photocentre_mas=Measurement(2.0, 0.1))
     assert orbit_with_velocities(astrometric) is astrometric
@@ -121,7 +123,7 @@ def test_further_instruments_need_further_epochs() -> None:
 
 def test_scenarios_without_an_inner_pair_are_alike() -> None:
     seen = _observation(_system(_velocities()))
-    plain = seen.residuals(SimpleNamespace(k1_km_s=np.array([50.0, 60.0])))  # type: ignore[arg-type]
+    plain = seen.residuals(SimpleNamespace(k1_km_s=np.array([50.0, 60.0]), inner=None))  # type: ignore[arg-type]
     assert plain.shape == (2, 1)
     assert plain[0] == plain[1]
     assert seen.count == 25 - 6
@@ -133,12 +135,30 @@ def test_scenarios_without_an_inner_pair_are_alike() -> None:
 
 def test_a_wave_that_is_not_there_costs_likelihood() -> None:
     seen = _observation(_system(_velocities(40)))
-    amplitude, frequency = np.array([0.0, 0.05, 3.0]), np.full(3, 0.21)
-    predicted = SimpleNamespace(k1_km_s=amplitude, inner_signal_km_s=amplitude, inner_signal_per_d=frequency)
-    found = seen.residuals(predicted)[:, 0]  # type: ignore[arg-type]
+    found = seen.residuals_with_wave(np.array([0.0, 0.05, 3.0]), np.full(3, 0.21))[:, 0]
     assert found[0] == pytest.approx(np.sqrt(seen.search.chi2))
     assert found[2] ** 2 > found[0] ** 2 + 25.0
     assert abs(found[1] - found[0]) < 0.5
+
+
+def test_the_wave_of_a_predicted_pair_is_that_of_the_triples() -> None:
+    """Pairs of 1 Msun and 1, 0.5 or next to nothing in 25 d, seen under 60 degrees, against the law called by hand."""
+    seen = _observation(_system(_velocities(40, error=0.01)))
+    second = np.array([1.0, 0.5, 1e-9])
+    predicted = SimpleNamespace(
+        k1_km_s=np.full(3, K1),
+        mass_msun=np.ones(3),
+        inclination_deg=np.full(3, 60.0),
+        inner=InnerOrbit(np.ones(3), second, np.full(3, 25.0)),
+    )
+    found = seen.residuals(predicted)[:, 0]  # type: ignore[arg-type]
+    wave = triples.inner_pair_signal(1.0, second, 1.0, 25.0, np.exp(seen.modes[0].point[0]), np.sqrt(0.75))
+    expected = seen.residuals_with_wave(wave.first_km_s, np.broadcast_to(wave.first_per_d, 3))[:, 0]
+    np.testing.assert_allclose(found, expected, rtol=1e-12)
+    assert found[2] == pytest.approx(np.sqrt(seen.search.chi2), rel=1e-9)
+    # A wave of 44 m/s, which 40 epochs of 10 m/s do not show.
+    assert 0.03 < wave.first_km_s[0] < 0.06
+    assert found[0] ** 2 > found[2] ** 2 + 25.0
 
 
 def test_inner_pair_limit_finds_room_for_the_true_pair_only() -> None:
@@ -171,3 +191,31 @@ def test_a_second_period_is_said() -> None:
     system = _system(epochs, **{**shape, "period_d": Measurement(PERIOD_D, 10.0)})
     said = " ".join(_observation(system).cautions(system))
     assert "nearly as well" in said
+
+
+def test_a_period_that_was_not_given_is_searched_and_its_rivals_are_named() -> None:
+    """The period of 212.4 d comes back, a K1 of the file is kept, and the cautions say whence the period is."""
+    given = Measurement(float("nan"), 0.0)
+    open_system = _system(_velocities(30), period_d=given, period_given=False)
+    fitted = orbit_with_velocities(open_system)
+    assert fitted.orbit.period_d.value == pytest.approx(212.4, rel=5e-3)
+    assert orbit_with_velocities(fitted) is fitted
+    (said,) = epoch_cautions(fitted)
+    assert said.startswith("No period was given: 21")
+    kept = _system(_velocities(30), period_d=given, period_given=False, k1_km_s=Measurement(50.0, 2.0))
+    assert orbit_with_velocities(kept).orbit.k1_km_s == Measurement(50.0, 2.0)
+
+
+def test_epochs_that_cannot_be_used_are_said() -> None:
+    system = _system(_velocities(4), k1_km_s=Measurement(50.0, 2.0))
+    (said,) = epoch_cautions(system)
+    assert "The 4 epoch velocities were not used" in said
+    assert epoch_cautions(_system(_velocities(30))) == []
+    assert epoch_cautions(_system(None)) == []
+
+
+def test_few_epochs_do_not_stand_for_the_period() -> None:
+    few = _system(_velocities(4), period_d=Measurement(float("nan"), 0.0), period_given=False)
+    astrometric = replace(few, orbit=replace(few.orbit, photocentre_mas=Measurement(2.0, 0.1)))
+    with pytest.raises(InputError, match="5 epochs"):
+        orbit_with_velocities(astrometric)

@@ -57,13 +57,16 @@ def test_the_example_leaves_out_only_what_excludes_something_else(full_text: str
         "distance.distance_error_pc",
         "extinction.ebv_max_mag",
         "orbit.thiele_innes",
+        "primary.emission_lines",  # a flag: the fuzz of this text compares numbers and words
+        "variability.ellipsoidal_mag",
+        "variability.ellipsoidal_error_mag",
     }
 
 
 @pytest.mark.parametrize(("name", "record"), RECORDS.items())
 def test_every_field_of_a_record_has_a_key(name: str, record: type) -> None:
     (table,) = (table for table in TABLES if table.name == name)
-    fields = {field.name for field in dataclasses.fields(record)} - {"eccentricity_given"}
+    fields = {field.name for field in dataclasses.fields(record)} - {"eccentricity_given", "period_given"}
     assert fields <= set(table.kinds())
 
 

@@ -172,13 +172,6 @@ def test_thiele_innes_elements_replace_photocentre_and_inclination(read: Read, l
     )
 
 
-def test_epoch_velocities_alone_are_an_orbit_constraint(read: Read, least_text: str) -> None:
-    text = least_text.replace("k1_km_s = 40\nk1_error_km_s = 1\n", "") + '[velocities]\nfile = "marlow7_rv.csv"\n'
-    system = read(text)
-    assert system.orbit.k1_km_s is None
-    assert system.velocities is not None
-
-
 def test_windows_line_ends_and_a_byte_order_mark_are_read(folder: Path, least_text: str) -> None:
     path = folder / "windows.toml"
     path.write_bytes(b"\xef\xbb\xbf" + least_text.replace("\n", "\r\n").encode())

@@ -14,7 +14,7 @@ from vetter.errors import InputError
 from vetter.system.covariance import is_covariance, is_symmetric
 from vetter.system.faults import LONGEST_SHOWN, FaultLog, show
 from vetter.system.keys import TABLES, TOP
-from vetter.system.kinds import Choice, Covariance, Kind, Number, Numbers, OneTable, Text, as_number
+from vetter.system.kinds import Choice, Covariance, Flag, Kind, Number, Numbers, OneTable, Text, as_number
 
 ANYTHING = st.recursive(
     st.one_of(
@@ -87,6 +87,12 @@ def test_words_of_a_range() -> None:
 def test_a_choice_keeps_the_listed_spelling() -> None:
     assert Choice(("Vega", "AB")).accept(" ab ") == "AB"
     assert Choice(("Vega", "AB")).accept("ST") is None
+
+
+@pytest.mark.parametrize("value", [True, False])
+def test_a_flag_is_true_or_false(value: bool) -> None:
+    assert Flag().accept(value) is value
+    assert [Flag().accept(other) for other in (0, 1, "true", None, [])] == [None] * 5
 
 
 def test_text_is_kept_as_written() -> None:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable
 from pathlib import Path
 
@@ -125,11 +126,30 @@ def test_truth_values_in_an_ecsv_column_are_not_numbers(faults: Faults, with_vel
     assert (fault.key, fault.value) == ("rv.csv, row 1, rv_km_s", "true")
 
 
-def test_two_epochs_alone_are_no_orbit_constraint(faults: Faults, with_velocities: str) -> None:
+FIVE_EPOCHS = "".join(f"{day},{day % 3},0.1,a\n" for day in range(1, 6))
+
+
+@pytest.mark.parametrize(
+    "rows", [FIVE_EPOCHS.replace("5,2,0.1,a\n", ""), FIVE_EPOCHS.replace("5,2,0.1,a", "5,2,0.1,b")]
+)
+def test_few_epochs_alone_are_no_orbit_constraint(faults: Faults, with_velocities: str, rows: str) -> None:
+    """Four of one instrument, or five of two: what is missing is said, for the amplitude and for the period."""
     text = with_velocities.replace("k1_km_s = 40\nk1_error_km_s = 1\n", "")
-    (fault,) = faults(text, rv__csv=HEADER + "1,2,0.1,a\n2,3,0.1,a\n")
+    (fault,) = faults(text, rv__csv=HEADER + rows)
     assert fault.key == "orbit"
-    assert "3 epochs" in fault.expected
+    assert "5 epochs at different times, and one more for each further instrument" in fault.expected
+    found = faults(text.replace("[orbit]\nperiod_d = 3\n", ""), rv__csv=HEADER + rows)
+    assert [fault.key for fault in found] == ["orbit", "orbit.period_d"]
+
+
+def test_enough_epochs_stand_for_the_whole_orbit(read: Read, with_velocities: str) -> None:
+    text = with_velocities.replace("k1_km_s = 40\nk1_error_km_s = 1\n", "")
+    dated = read(text, rv__csv=HEADER + FIVE_EPOCHS).orbit
+    assert (dated.period_given, dated.period_d.value, dated.k1_km_s) == (True, 3.0, None)
+    for rest in (text.replace("period_d = 3\n", ""), text.replace("[orbit]\nperiod_d = 3\n", "")):
+        orbit = read(rest, rv__csv=HEADER + FIVE_EPOCHS).orbit
+        assert not orbit.period_given
+        assert math.isnan(orbit.period_d.value)
 
 
 @pytest.mark.parametrize(

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, ClassVar, NamedTuple, Self
 
@@ -12,10 +13,12 @@ from vetter.errors import InputError
 from vetter.observations.base import Observation, gaussian_ln_norm, register
 from vetter.observations.orbit import k1_error_km_s
 from vetter.observations.prediction import Prediction
-from vetter.physics.keplerian_fit import LEAST_EPOCHS, SECURE_LN_RATIO, KeplerianFit, fit_velocities
+from vetter.physics.keplerian_fit import SECURE_LN_RATIO, KeplerianFit, fit_velocities
 from vetter.physics.keplerian_search import Mode, find_modes, search_periods
+from vetter.physics.triples import InnerPairSignal, inner_pair_signal
 from vetter.physics.velocity_model import EpochData, epoch_data
 from vetter.physics.velocity_residuals import ResidualSearch, k1_at_fixed_shape, residual_search
+from vetter.system.epochs import ENOUGH_WORDS, enough_epochs
 from vetter.system.model import Measurement, Orbit, System, Velocities
 
 if TYPE_CHECKING:
@@ -73,12 +76,10 @@ class VelocitiesObservation(Observation):
 
     def residuals(self, predicted: Prediction) -> FloatArray:
         """Return (n, 1): the root of the sum of squares, the phase of the wave integrated out."""
-        # Scenarios without an inner pair carry no such prediction.
-        amplitude = getattr(predicted, "inner_signal_km_s", None)
-        frequency = getattr(predicted, "inner_signal_per_d", None)
-        if amplitude is None or frequency is None:
+        signal = inner_signal(predicted, float(np.exp(self.modes[0].point[0])))
+        if signal is None:
             return np.full((predicted.k1_km_s.size, 1), np.sqrt(self.search.chi2))
-        return self.residuals_with_wave(amplitude, frequency)
+        return self.residuals_with_wave(signal.first_km_s, signal.first_per_d)
 
     def residuals_with_wave(self, amplitude_km_s: FloatArray, frequency_per_d: FloatArray) -> FloatArray:
         """Return (n, 1) for waves of these amplitudes and frequencies (turns per day), both (n,)."""
@@ -101,6 +102,18 @@ class InnerSignalLimit(NamedTuple):
     amplitude_max_km_s: FloatArray
 
 
+def inner_signal(predicted: Prediction, period_d: float) -> InnerPairSignal | None:
+    """Return the waves (n,) that a hidden pair adds to the seen star's velocity in an orbit of ``period_d``; else None.
+
+    Both orbits taken as circular and in one plane.
+    """
+    inner = predicted.inner
+    if inner is None:
+        return None
+    sine = np.sin(np.radians(predicted.inclination_deg))
+    return inner_pair_signal(inner.first_msun, inner.second_msun, predicted.mass_msun, inner.period_d, period_d, sine)
+
+
 def inner_signal_limit(
     velocities: Velocities, orbit: Orbit, inner_period_d: ArrayLike, confidence: float = 0.95
 ) -> InnerSignalLimit:
@@ -118,12 +131,6 @@ def inner_signal_limit(
     return InnerSignalLimit(frequency, residual_search(data, best).amplitude_limit_km_s(frequency, confidence))
 
 
-def enough_epochs(velocities: Velocities) -> bool:
-    """Return whether an orbit can be fitted: five epochs, one more for each further instrument, at several times."""
-    needed = LEAST_EPOCHS - 1 + len(set(velocities.instrument))
-    return len(velocities.time_bjd) >= needed and max(velocities.time_bjd) > min(velocities.time_bjd)
-
-
 def fit_epochs(velocities: Velocities, orbit: Orbit, seed: int = 0) -> KeplerianFit:
     """Return the fit of the epochs, with the file's period and eccentricity as measurements where they have errors."""
     period, eccentricity = _constraints(orbit)
@@ -139,41 +146,54 @@ def fit_epochs(velocities: Velocities, orbit: Orbit, seed: int = 0) -> Keplerian
 
 
 def orbit_with_velocities(system: System) -> System:
-    """Return the system with K1, eccentricity and period from its epochs, where the file gives no K1.
+    """Return the system with K1, eccentricity and period from its epochs, where the file gives no K1 or no period.
 
     Otherwise the system itself. The errors of period and eccentricity come out as zero and that of K1 stands for
     all three: K1 and e are correlated, and so the mass function keeps its right width. The file's period and
     eccentricity count as measurements; where they come from the same epochs, their errors are too small by up to
-    sqrt 2. InputError where the epochs are too few and nothing else weighs the companion.
+    sqrt 2. A K1 of the file is kept. InputError where the epochs are too few and nothing else weighs the companion.
     """
     orbit, velocities = system.orbit, system.velocities
-    if velocities is None or orbit.k1_km_s is not None:
+    if velocities is None or not (orbit.k1_km_s is None or math.isnan(orbit.period_d.value)):
         return system
     if not enough_epochs(velocities):
-        if orbit.photocentre_mas is not None or orbit.thiele_innes is not None:
+        if orbit.period_given and (orbit.photocentre_mas is not None or orbit.thiele_innes is not None):
             return system
-        expected = f"{LEAST_EPOCHS} epochs, and one more for each further instrument"
-        raise InputError.single(
-            system.source, "velocities.file", velocities.file, expected, "Add epochs, or give k1_km_s of your own fit."
-        )
+        mend = "Add epochs, or give k1_km_s and period_d of your own fit."
+        raise InputError.single(system.source, "velocities.file", velocities.file, ENOUGH_WORDS, mend)
     fit = fit_epochs(velocities, orbit)
     fitted = replace(
         orbit,
         period_d=Measurement(fit.value("period_d"), 0.0),
         eccentricity=Measurement(fit.value("eccentricity"), 0.0),
         eccentricity_given=True,
-        k1_km_s=Measurement(*fit.k1_at_fixed_shape()),
+        k1_km_s=orbit.k1_km_s or Measurement(*fit.k1_at_fixed_shape()),
     )
     return replace(system, orbit=fitted)
+
+
+def epoch_cautions(system: System) -> list[str]:
+    """Return a caution on a period that only the epochs tell, or on epochs too few to tell anything."""
+    velocities = system.velocities
+    if velocities is not None and not enough_epochs(velocities):
+        return [f"The {len(velocities.time_bjd)} epoch velocities were not used: an orbit needs {ENOUGH_WORDS}."]
+    if not system.orbit.period_given:
+        return [f"No period was given: {system.orbit.period_d.value:.6g} d is that of the best orbit of the epochs."]
+    return []
 
 
 def _epochs(velocities: Velocities) -> EpochData:
     return epoch_data(velocities.time_bjd, velocities.rv_km_s, velocities.rv_error_km_s, velocities.instrument)
 
 
-def _constraints(orbit: Orbit) -> tuple[Measurement | float, Measurement | None]:
-    """Return period and eccentricity as the fit takes them: an error of zero means that none was given."""
-    period = orbit.period_d if orbit.period_d.error > 0.0 else orbit.period_d.value
+def _constraints(orbit: Orbit) -> tuple[Measurement | float | None, Measurement | None]:
+    """Return period and eccentricity as the fit takes them: an error of zero means that none was given.
+
+    A period that the file does not give is searched for every time, so that its rivals can be named.
+    """
+    period: Measurement | float | None = orbit.period_d if orbit.period_d.error > 0.0 else orbit.period_d.value
+    if not orbit.period_given:
+        period = None
     if not orbit.eccentricity_given:
         return period, None
     return period, Measurement(orbit.eccentricity.value, max(orbit.eccentricity.error, ASSUMED_ECCENTRICITY_ERROR))

@@ -31,6 +31,9 @@ THIN_DISC_EFFICIENCY = 0.1
 THIN_DISC_ABOVE = 0.01
 """Accretion above this fraction of the Eddington rate goes through a thin disc (Narayan & Yi 1995, ApJ 452, 710)."""
 
+CORONA_BELOW_K = 6500.0
+"""Hotter stars have no convective envelope deep enough for a corona (common practice, no source)."""
+
 SATURATED_CORONA = 10.0**-3.13
 """Highest L_X / L of a cool star's corona (Wright et al. 2011, ApJ 743, 48)."""
 
@@ -124,5 +127,5 @@ def eddington_luminosity_erg_s(mass_msun: ArrayLike) -> FloatArray:
 
 
 def coronal_luminosity_max_erg_s(luminosity_lsun: ArrayLike) -> FloatArray:
-    """Return the most (erg/s) that the corona of a star cooler than about 6500 K shines in X-rays."""
+    """Return the most (erg/s) that the corona of a star cooler than ``CORONA_BELOW_K`` shines in X-rays."""
     return np.asarray(SATURATED_CORONA * _LSUN_ERG_S * np.asarray(luminosity_lsun, dtype=float))

@@ -18,12 +18,10 @@ from vetter.physics import kepler
 from vetter.physics.keplerian_sampler import cycle_window, sample_orbits
 from vetter.physics.keplerian_search import Mode, Search, find_modes, search_periods
 from vetter.physics.velocity_model import EpochData, basis, draw_linear, epoch_data, solve
+from vetter.system.epochs import LEAST_EPOCHS
 from vetter.system.model import Measurement
 
 FloatArray = NDArray[np.float64]
-
-LEAST_EPOCHS = 5
-"""Fewer epochs than this, beside one offset per further instrument, are not fitted."""
 
 SECURE_LN_RATIO = 5.0
 """A rival period this far below the best in ln likelihood no longer counts (a factor of 150)."""

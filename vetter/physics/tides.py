@@ -1,6 +1,7 @@
 """Tides between the seen star and its companion: how its light waves at half the period, how soon it is locked.
 
 - how large are the ellipsoidal variations? :func:`ellipsoidal_amplitude_mag`
+- and in an eccentric orbit? times :func:`eccentric_share`
 - how strongly does its surface brighten with gravity? :func:`gravity_darkening`
 - does it turn with the orbit? :func:`synchronisation_time_myr`, an estimate
 
@@ -24,6 +25,7 @@ CONVECTIVE_BELOW_K = 7000.0
 """Cooler stars have a convective envelope (Lucy 1967, Z. Astrophys. 65, 89, for its gravity darkening)."""
 
 _MAG_PER_FRACTION = 2.5 / np.log(10.0)
+_ORBIT_POINTS = 512
 _SECOND_RADIATION_CM_K = 1.438777
 """h c / k, cm K."""
 
@@ -72,6 +74,33 @@ def _near_filling_repair(
     f4, f6 = filling2**2, filling2**3
     fitted = 0.114 * f4 + 1.769 * (1.0 + q) * r**3 - 0.433 * g * f4 + 0.627 * g * f6 * sin2
     return np.asarray(1.0 + next_term * (1.0 + 0.443 * f4) + fitted)
+
+
+def eccentric_share(eccentricity: float, sin_inclination: ArrayLike) -> FloatArray:
+    """Return the light's amplitude at half the period over that of a circular orbit of the same semi-major axis.
+
+    The Fourier term at twice the orbital frequency of the equilibrium tide (a/r)^3 [(3/2 sin^2 i - 1) + 3/2 sin^2 i
+    cos 2(nu + omega)], root mean square over the unknown omega; 0 <= e < 1. About 1 - 5/2 e^2 for an orbit seen edge
+    on: the rest of the variation moves to other harmonics. Derived here; for the tide see Kumar, Ao & Quataert 1995,
+    ApJ 449, 294 (from memory).
+    """
+    sin2 = np.maximum(np.asarray(sin_inclination, dtype=float) ** 2, 1e-6)
+    forward, steady, backward = _second_harmonics(eccentricity)
+    upright = 2.0 * steady * (1.0 - 2.0 / (3.0 * sin2))
+    return np.asarray(np.sqrt(forward**2 + upright**2 + backward**2))
+
+
+def _second_harmonics(eccentricity: float) -> tuple[float, float, float]:
+    """Means over one orbit of (a/r)^3 times cos(2 nu - 2 M), cos 2M and cos(2 nu + 2 M)."""
+    nu = np.linspace(-np.pi, np.pi, _ORBIT_POINTS, endpoint=False)
+    e = eccentricity
+    eccentric = 2.0 * np.arctan2(np.sqrt(1.0 - e) * np.sin(0.5 * nu), np.sqrt(1.0 + e) * np.cos(0.5 * nu))
+    mean = eccentric - e * np.sin(eccentric)
+    # dM = (r/a)^2 / sqrt(1 - e^2) d nu.
+    weight = (1.0 + e * np.cos(nu)) / (1.0 - e * e) ** 1.5
+    terms = (np.cos(2.0 * (nu - mean)), np.cos(2.0 * mean), np.cos(2.0 * (nu + mean)))
+    forward, steady, backward = (float(np.mean(weight * term)) for term in terms)
+    return forward, steady, backward
 
 
 def gravity_darkening(teff_k: ArrayLike, wavelength_nm: ArrayLike) -> FloatArray:

@@ -98,13 +98,14 @@ def shell_luminosity_lsun(core_mass_msun: ArrayLike, feh: ArrayLike = 0.0) -> Fl
 def region(mass_msun: ArrayLike, feh: ArrayLike) -> Region:
     """Return the borders of the region for masses (Msun) and metallicities (held inside -2.30 to +0.18); broadcast.
 
-    The floor is the lower of the end of the main sequence and the base of the giant branch: stars of 1.5-5 Msun fade
-    while they cross. The ceiling is ``CEILING`` times helium ignition, at least 0.3 dex above the floor.
+    The floor is the lowest of the end of the main sequence, the base of the giant branch and helium ignition: stars of
+    1.5-5 Msun fade while they cross, and so do those above 50 Msun, which ignite helium on the way. The ceiling is
+    ``CEILING`` times helium ignition, at least 0.3 dex above the floor.
     """
     z = metal_fraction(feh)
-    end = hpt.main_sequence(mass_msun, z, 1.0)
-    low = np.log10(np.minimum(end.luminosity_lsun, giant_branch_base_lsun(mass_msun, z)))
-    high = np.log10(CEILING * helium_ignition_lsun(mass_msun, z))
+    end, ignition = hpt.main_sequence(mass_msun, z, 1.0), helium_ignition_lsun(mass_msun, z)
+    low = np.log10(np.minimum(np.minimum(end.luminosity_lsun, giant_branch_base_lsun(mass_msun, z)), ignition))
+    high = np.log10(CEILING * ignition)
     hot = teff_from_luminosity_k(end.luminosity_lsun, end.radius_rsun)
     return Region(low, np.maximum(high, low + _LEAST_RISE_DEX), hot)
 

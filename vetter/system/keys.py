@@ -8,7 +8,7 @@ from __future__ import annotations
 from typing import Final
 
 from vetter.system.fields import Key, Table, measured
-from vetter.system.kinds import Choice, Covariance, ManyTables, Number, Numbers, OneTable, Text
+from vetter.system.kinds import Choice, Covariance, Flag, ManyTables, Number, Numbers, OneTable, Text
 
 SCENARIO_NAMES: Final = (
     "main_sequence",
@@ -76,6 +76,7 @@ PRIMARY: Final = Table(
         measured("feh", "feh_error", Number(-6.0, 1.5), "metallicity [Fe/H]"),
         Key("vsini_km_s", Number(0.0, 3000.0, "km/s"), "projected rotation"),
         measured("mass_msun", "mass_error_msun", _above_zero(1000.0, "Msun"), "outside estimate of its mass"),
+        Key("emission_lines", Flag(), "whether it has emission lines: gas around it then adds light beyond 3 micron"),
     ),
 )
 THIELE_INNES: Final = Table(
@@ -88,9 +89,16 @@ THIELE_INNES: Final = Table(
 )
 ORBIT: Final = Table(
     "orbit",
-    "The seen star's orbit: the period and at least one of amplitude, photocentre, elements, epoch velocities.",
+    "The seen star's orbit: the period and at least one of amplitude, photocentre, elements, epoch velocities. With "
+    "enough epoch velocities it may be left out.",
     (
-        measured("period_d", "period_error_d", _above_zero(1e7, "d"), "period", required=True, error_optional=True),
+        measured(
+            "period_d",
+            "period_error_d",
+            _above_zero(1e7, "d"),
+            "period; searched in the epoch velocities when not given",
+            error_optional=True,
+        ),
         measured(
             "eccentricity",
             "eccentricity_error",
@@ -149,8 +157,14 @@ VARIABILITY: Final = Table(
     (
         Key("band", BAND, "band of the light curve", required=True),
         Key("ellipsoidal_max_mag", _above_zero(10.0, "mag"), "95 % limit on the semi-amplitude at half the period"),
-        Key("eclipses", Choice(("none", "seen", "unknown")), "whether eclipses are seen"),
-        Key("eclipse_depth_min_mag", _above_zero(10.0, "mag"), "depth that would have been noticed"),
+        measured(
+            "ellipsoidal_mag",
+            "ellipsoidal_error_mag",
+            _above_zero(10.0, "mag"),
+            "semi-amplitude at half the period, where it was measured",
+        ),
+        Key("eclipses", Choice(("none", "seen", "unknown")), "whether eclipses are seen, at the orbital period"),
+        Key("eclipse_depth_min_mag", _above_zero(10.0, "mag"), "depth that would have been noticed; 0.01"),
     ),
 )
 X_RAY: Final = Table(

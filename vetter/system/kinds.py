@@ -123,6 +123,25 @@ class Choice:
 
 
 @dataclass(frozen=True)
+class Flag:
+    """True or false."""
+
+    @property
+    def expected(self) -> str:
+        """The two values."""
+        return "true or false"
+
+    def accept(self, value: object) -> bool | None:
+        """Return the value when it is one of the two."""
+        return value if isinstance(value, bool) else None
+
+    def mend(self, value: object) -> str:
+        """Return the remedy: TOML's own words."""
+        del value
+        return "Write true or false, without quotes."
+
+
+@dataclass(frozen=True)
 class Numbers:
     """A list of numbers of one range; ``length`` fixes how many, ``ascending`` asks for strictly rising values."""
 

@@ -156,6 +156,10 @@ def _report_repeats(
 def read_variability(raw: Raw, context: Context) -> Variability | None:
     """Return what the light curve allows, or None when the table is faulty."""
     checked = context.read(VARIABILITY, raw, "variability")
+    if {"ellipsoidal_max_mag", "ellipsoidal_mag"} <= checked.present:
+        expected = "a measured ellipsoidal_mag or the limit ellipsoidal_max_mag, not both"
+        key = "ellipsoidal_max_mag"
+        context.log.add(checked.key(key), raw.get(key), expected, "Keep one of the two.")
     band = context.band(checked.values.get("band"), "variability.band")
     return Variability(**{**checked.values, "band": band}) if checked.clean and band is not None else None
 

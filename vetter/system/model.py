@@ -45,13 +45,14 @@ class Extinction:
 
 @dataclass(frozen=True)
 class Primary:
-    """The star that is seen."""
+    """The star that is seen. ``emission_lines``: gas around it may add infrared light."""
 
     teff_k: Measurement | None = None
     logg: Measurement | None = None
     feh: Measurement | None = None
     vsini_km_s: float | None = None
     mass_msun: Measurement | None = None
+    emission_lines: bool = False
 
 
 @dataclass(frozen=True)
@@ -67,11 +68,15 @@ class ThieleInnes:
 
 @dataclass(frozen=True)
 class Orbit:
-    """The seen star's orbit. An error of zero for period or eccentricity means "not given"."""
+    """The seen star's orbit. An error of zero for period or eccentricity means "not given".
+
+    Where the file gives no period, it is not-a-number until the epoch velocities have told it.
+    """
 
     period_d: Measurement
     eccentricity: Measurement
     eccentricity_given: bool = True
+    period_given: bool = True
     k1_km_s: Measurement | None = None
     inclination_deg: Measurement | None = None
     photocentre_mas: Measurement | None = None
@@ -126,12 +131,16 @@ class Velocities:
 
 @dataclass(frozen=True)
 class Variability:
-    """Limits from a light curve; ``eclipses`` is "none", "seen" or "unknown"."""
+    """What a light curve allows; ``eclipses`` is "none", "seen" or "unknown".
+
+    The semi-amplitude at half the orbital period is limited or measured, not both.
+    """
 
     band: str
     ellipsoidal_max_mag: float | None = None
     eclipses: str = "unknown"
     eclipse_depth_min_mag: float | None = None
+    ellipsoidal_mag: Measurement | None = None
 
 
 @dataclass(frozen=True)

@@ -7,13 +7,13 @@ from pathlib import Path
 from typing import Any
 
 from vetter.system.context import Context
+from vetter.system.epochs import enough_epochs
 from vetter.system.faults import FaultLog
 from vetter.system.fields import Table
 from vetter.system.keys import LIGHT_LIMIT, PRIMARY, SKY, TOP, X_RAY
 from vetter.system.light_tables import read_imaging, read_passbands, read_photometry, read_variability
 from vetter.system.model import LightLimit, Primary, Sky, System, XRay
 from vetter.system.star_tables import (
-    LEAST_EPOCHS,
     read_assumptions,
     read_distance,
     read_extinction,
@@ -64,11 +64,12 @@ def check_system(raw: Raw, source: str, folder: str | Path = ".") -> System:
     _report_absent(checked.present, log)
     if "velocities" in top:
         parts["velocities"] = read_velocities(top.pop("velocities"), context)
-    if "orbit" in top:
+    # Epoch velocities can stand for the orbit.
+    if "orbit" in top or ("orbit" not in checked.present and "velocities" in checked.present):
         velocities = parts.get("velocities")
         # Faulty velocities are taken to be enough: their own fault is reported already.
-        enough = "velocities" in checked.present and (velocities is None or len(velocities.time_bjd) >= LEAST_EPOCHS)
-        parts["orbit"] = read_orbit(top.pop("orbit"), context, has_velocities=enough)
+        enough = "velocities" in checked.present and (velocities is None or enough_epochs(velocities))
+        parts["orbit"] = read_orbit(top.pop("orbit", {}), context, has_velocities=enough)
     parts.update({name: _READERS[name](table, context) for name, table in top.items() if name in _READERS})
     log.raise_if_any()
     return System(source=source, **parts)
@@ -78,7 +79,7 @@ def _report_absent(present: frozenset[str], log: FaultLog) -> None:
     """Record the tables without which nothing can be said."""
     needed = {"distance": "parallax_mas or distance_pc, with its error", "orbit": "period_d and what was measured"}
     for name, keys in needed.items():
-        if name not in present:
+        if name not in present and not (name == "orbit" and "velocities" in present):
             log.add(name, None, f"a table [{name}], but it is missing", f"Add [{name}] with {keys}.")
 
 

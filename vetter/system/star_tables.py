@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping
 from typing import Any, Final
 
 from vetter.errors import InputError
 from vetter.system.columns import Column, read_columns
 from vetter.system.context import Context
+from vetter.system.epochs import ENOUGH_WORDS
 from vetter.system.fields import Checked
 from vetter.system.keys import (
     ASSUMPTIONS,
@@ -37,9 +39,6 @@ VELOCITY_COLUMNS: Final = (
     Column("rv_error_km_s", Number(0.0, 1e5, "km/s", open_low=True)),
     Column("instrument", Text("an instrument's name", 200), optional=True),
 )
-
-LEAST_EPOCHS: Final = 3
-"""Epochs without which velocities alone give no amplitude: mean velocity, amplitude and phase are unknown."""
 
 Raw = Mapping[str, object]
 
@@ -75,7 +74,7 @@ def read_extinction(raw: Raw, context: Context) -> Extinction | None:
 
 
 def read_orbit(raw: Raw, context: Context, *, has_velocities: bool) -> Orbit | None:
-    """Return the orbit; None when the table is faulty. ``has_velocities``: epoch velocities can give the amplitude."""
+    """Return the orbit; None when the table is faulty. ``has_velocities``: epoch velocities can give the orbit."""
     checked = context.read(ORBIT, raw, "orbit")
     elements_raw = checked.values.pop("thiele_innes", None)
     elements = _read_elements(elements_raw, context) if elements_raw is not None else None
@@ -85,17 +84,24 @@ def read_orbit(raw: Raw, context: Context, *, has_velocities: bool) -> Orbit | N
         band = context.band(band, "orbit.photocentre_band")
     if not checked.clean:
         return None
-    given = "eccentricity" in checked.values
-    values = {"eccentricity": Measurement(0.0, 0.0), **checked.values}
-    return Orbit(**values, eccentricity_given=given, photocentre_band=band, thiele_innes=elements)
+    return Orbit(
+        **{"period_d": Measurement(math.nan, 0.0), "eccentricity": Measurement(0.0, 0.0), **checked.values},
+        period_given="period_d" in checked.values,
+        eccentricity_given="eccentricity" in checked.values,
+        photocentre_band=band,
+        thiele_innes=elements,
+    )
 
 
 def _report_orbit_rules(checked: Checked, context: Context, *, has_velocities: bool) -> None:
     """Record what the orbit's keys require of and forbid to each other."""
     present = checked.present
     if not (has_velocities or present & {"k1_km_s", "k1_error_km_s", "photocentre_mas", "thiele_innes"}):
-        expected = f"one of k1_km_s, photocentre_mas, [orbit.thiele_innes], {LEAST_EPOCHS} epochs of [velocities]"
+        expected = f"one of k1_km_s, photocentre_mas, [orbit.thiele_innes], or [velocities] with {ENOUGH_WORDS}"
         context.log.add("orbit", None, expected, "Add one: a period alone does not bound the companion's mass.")
+    if not (has_velocities or present & {"period_d", "period_error_d"}):
+        expected = f"a number above 0 in d, but it is missing, and so are {ENOUGH_WORDS}"
+        context.log.add(checked.key("period_d"), None, expected, "Add period_d.")
     for name in ("photocentre_mas", "inclination_deg"):
         if "thiele_innes" in present and name in present:
             value = checked.raw.get(name)
