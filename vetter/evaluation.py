@@ -24,7 +24,13 @@ if TYPE_CHECKING:
 FloatArray = NDArray[np.float64]
 
 POLISH_STARTS = 5
-"""Posterior samples polished into the largest likelihood, beside the modes that the sampler found."""
+"""Posterior samples polished into the largest likelihood, beside the modes and the prior points that fit best."""
+
+NEGLIGIBLE_LN = 20.0
+"""A branch with so much less ln evidence than another of its scenario need not be sampled well."""
+
+BEST_ENDS = 2
+"""Ends of the fits with everything that start the fits without one observation."""
 
 SECOND_LOOK = 8
 """How many times more prior points are tried before a scenario is called closed."""
@@ -84,6 +90,7 @@ def evaluate(
     seed: int = 0,
     settings: Settings | None = None,
     progress: Callable[[str], None] | None = None,
+    grid: str | None = None,
 ) -> Verdicts:
     """Fit every scenario to everything that was measured and return the verdicts.
 
@@ -94,12 +101,14 @@ def evaluate(
     seed : the same seed gives the same result, bit for bit
     settings : precision of the sampler
     progress : called with the title of each scenario before it runs
+    grid : atmospheres of the user's own (``vetter grids add``); the shipped ones by default
 
-    Raises InputError for an unknown scenario, or when too few epoch velocities are all that weighs the companion.
+    Raises InputError for an unknown scenario or grid, or when too few epoch velocities are all that weighs the
+    companion.
     """
     from vetter.results.compare import compare
 
-    context, observations = prepare(system)
+    context, observations = prepare(system, grid)
     runs = []
     for scenario in chosen_scenarios(system, scenarios):
         if progress is not None:
@@ -108,7 +117,7 @@ def evaluate(
     return compare(context, observations, runs, seed)
 
 
-def prepare(system: System) -> tuple[Context, list[Observation]]:
+def prepare(system: System, grid: str | None = None) -> tuple[Context, list[Observation]]:
     """Return the context and the observations of a system; K1 comes from its epoch velocities where it was not given.
 
     Raises InputError when too few epoch velocities are all that weighs the companion.
@@ -117,62 +126,95 @@ def prepare(system: System) -> tuple[Context, list[Observation]]:
     from vetter.observations.velocities import orbit_with_velocities
     from vetter.scenarios.context import build_context
 
-    context = build_context(orbit_with_velocities(system))
+    context = build_context(orbit_with_velocities(system), grid)
     made = [kind.from_system(context.system, context.engine) for kind in registered()]
     return context, [observation for observation in made if observation is not None]
 
 
 def chosen_scenarios(system: System, names: Sequence[str] | None) -> list[Scenario]:
-    """Return the scenarios of these names in the table's order. Raises InputError for an unknown one."""
+    """Return the scenarios of these names in the table's order, by default all but those that run only on request.
+
+    Raises InputError for an unknown one.
+    """
     from vetter.errors import InputError
     from vetter.scenarios.base import registered
 
-    known = registered()
+    known = registered(on_request=True)
     for name in names or ():
         if name not in known:
             raise InputError.single(system.source, "scenario", name, f"one of {', '.join(known)}")
-    return [scenario for name, scenario in known.items() if not names or name in names]
+    wanted = names or list(registered())
+    return [scenario for name, scenario in known.items() if name in wanted]
 
 
 def run_scenario(
     scenario: Scenario, context: Context, observations: Sequence[Observation], seed: int, settings: Settings
 ) -> ScenarioRun:
     """Sample and polish every branch of a scenario; each has its own random stream, whatever else is run."""
-    runs = []
+    fits, seeds = [], []
     for place, branch in enumerate(scenario.branches(context)):
         stream = zlib.crc32(f"{scenario.name}/{branch.seen.name}".encode()) + place
-        fit = Fit(branch, tuple(observations))
-        runs.append(_run_branch(fit, int(np.random.SeedSequence([seed, stream]).generate_state(1)[0]), settings))
+        fits.append(Fit(branch, tuple(observations)))
+        seeds.append(int(np.random.SeedSequence([seed, stream]).generate_state(1)[0]))
+    looks = [_sample(fit, own, settings) for fit, own in zip(fits, seeds, strict=True)]
+    weightiest = max((look.ln_evidence for look in looks if isinstance(look, Posterior)), default=-np.inf)
+    runs = []
+    for fit, own, look in zip(fits, seeds, looks, strict=True):
+        if isinstance(look, str):
+            runs.append(BranchRun(fit, None, np.zeros(fit.dimension), np.inf, {}, look))
+            continue
+        matters = settings.second_effort and look.ln_evidence > weightiest - NEGLIGIBLE_LN
+        again = matters and not look.converged
+        runs.append(_polished(fit, importance.try_harder(fit, look, settings, own) if again else look))
     return ScenarioRun(scenario, tuple(runs))
 
 
-def _run_branch(fit: Fit, seed: int, settings: Settings) -> BranchRun:
+def _sample(fit: Fit, seed: int, settings: Settings) -> Posterior | str:
+    """Return the posterior of a branch, or in words the wall that closes it everywhere."""
     posterior = importance.sample(fit, settings, seed)
-    if posterior is None:
-        many = SECOND_LOOK * settings.start_points
-        points = importance.prior_points(fit.dimension, many, np.random.default_rng(seed))
-        if not np.isfinite(fit.evaluate(points).ln_prior_ratio).any():
-            return BranchRun(fit, None, np.zeros(fit.dimension), np.inf, {}, fit.closed_because(points))
-        posterior = importance.sample(fit, settings, seed, points)
+    if posterior is not None:
+        return posterior
+    points = importance.prior_points(fit.dimension, SECOND_LOOK * settings.start_points, np.random.default_rng(seed))
+    if not np.isfinite(fit.evaluate(points).ln_prior_ratio).any():
+        return fit.closed_because(points)
+    posterior = importance.sample(fit, settings, seed, points)
     if posterior is None:
         raise RuntimeError("open ground vanished between two looks at the same points")
-    starts = _polish_starts(posterior)
+    return posterior
+
+
+def _polished(fit: Fit, posterior: Posterior) -> BranchRun:
+    """Return the branch with its best fit, with everything and without each observation."""
+    best_x, chi2 = _best_fits(fit, np.vstack([_spread(posterior), posterior.modes, posterior.likeliest]))
+    starts = np.vstack([best_x[:BEST_ENDS], _spread(posterior)])
+    return BranchRun(fit, posterior, best_x[0], float(chi2[0]), _without_each(fit, starts, float(chi2[0])))
+
+
+def _best_fits(fit: Fit, starts: FloatArray) -> tuple[FloatArray, FloatArray]:
+    """Return where the fits from these starts end (b, dimension) and their sums of squares (b,), best first."""
+    use = np.ones((len(starts), fit.evaluate(starts[:1]).residuals.shape[1]))
+    found = optimise.minimise(fit, starts, use, prior=False)
+    order = np.argsort(found.chi2, kind="stable")
+    return found.x[order], found.chi2[order]
+
+
+def _without_each(fit: Fit, starts: FloatArray, chi2: float) -> dict[str, float]:
+    """Return the least sum of squares without each observation that may be left out, all fitted side by side."""
     slices = fit.columns_of(starts[:1])
-    droppable = [observation.name for observation in fit.observations if observation.droppable]
-    use = np.ones((1 + len(droppable), max(part.stop for part in slices.values())))
-    for row, name in enumerate(droppable, start=1):
+    names = [observation.name for observation in fit.observations if observation.droppable]
+    if not names:
+        return {}
+    use = np.ones((len(names), max(part.stop for part in slices.values())))
+    for row, name in enumerate(names):
         use[row, slices[name]] = 0.0
-    count = len(starts)
-    found = optimise.minimise(fit, np.tile(starts, (len(use), 1)), np.repeat(use, count, axis=0), prior=False)
-    chi2 = found.chi2.reshape(len(use), count)
-    best = int(np.argmin(chi2[0]))
+    every = np.repeat(use, len(starts), axis=0)
+    found = optimise.minimise(fit, np.tile(starts, (len(names), 1)), every, prior=False)
+    least = found.chi2.reshape(len(names), len(starts)).min(axis=1)
     # A fit without an observation can never be worse than the fit with it.
-    without = {name: float(min(chi2[row].min(), chi2[0, best])) for row, name in enumerate(droppable, start=1)}
-    return BranchRun(fit, posterior, found.x[best], float(chi2[0, best]), without)
+    return {name: float(min(value, chi2)) for name, value in zip(names, least, strict=True)}
 
 
-def _polish_starts(posterior: Posterior) -> FloatArray:
-    """Return the modes and the heaviest samples, spread over the posterior, as starting points (b, dimension)."""
+def _spread(posterior: Posterior) -> FloatArray:
+    """Return some of the heaviest samples, spread over the posterior, as starting points (b, dimension)."""
     order = np.argsort(-posterior.ln_weights, kind="stable")
-    spread = order[np.linspace(0, min(200, len(order) - 1), POLISH_STARTS).astype(int)]
-    return np.vstack([posterior.modes, posterior.x[spread]])
+    return np.asarray(posterior.x[order[np.linspace(0, min(200, len(order) - 1), POLISH_STARTS).astype(int)]])

@@ -5,7 +5,7 @@ from __future__ import annotations
 import numpy as np
 import pytest
 
-from vetter.inference.importance import Settings, sample
+from vetter.inference.importance import Settings, sample, try_harder
 from vetter.inference.problem import Evaluation, open_ground
 
 SETTINGS = Settings()
@@ -81,3 +81,26 @@ class _Closed:
 
 def test_a_closed_prior_returns_nothing() -> None:
     assert sample(_Closed(), SETTINGS, 0) is None
+
+
+class _Horseshoe:
+    """Two bent ridges: the second coordinate follows the square of the first, the third its sign."""
+
+    dimension, ln_norm = 6, 0.0
+
+    def evaluate(self, x: np.ndarray) -> Evaluation:
+        bend = (x[:, 1] - (x[:, 0] ** 2 - 1.0)) / 0.005
+        side = (x[:, 2] - 1.5 * np.sign(x[:, 0])) / 0.05
+        return open_ground(np.stack([bend, side], axis=1))
+
+
+def test_a_second_effort_never_makes_it_worse_and_says_so() -> None:
+    hopeless = Settings(start_points=512, rung_points=256, rungs=2, components=1, effective=100, last_points=512)
+    first = sample(_Horseshoe(), hopeless, 3)
+    assert first is not None
+    assert not first.converged
+    assert first.efforts == 1
+    found = try_harder(_Horseshoe(), first, hopeless, 3)
+    assert found.efforts == 2
+    assert found.evaluations > 2 * first.evaluations
+    assert found.effective_sample_size >= first.effective_sample_size

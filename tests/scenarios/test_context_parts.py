@@ -110,8 +110,9 @@ def test_distance(
 def test_a_guide_is_centred_inside_its_range() -> None:
     assert guided(Measurement(-0.02, 0.01), 0.0, 1.0).centre == 0.0
     assert guided(Measurement(7.0, 0.1), 0.0, 5.6).centre == 5.6
-    assert optional_guide(None, 0.0, 1.0) is None
-    assert optional_guide(Measurement(0.3, 0.1), 0.0, 1.0) == guided(Measurement(0.3, 0.1), 0.0, 1.0)
+    assert optional_guide(None, 0.0, 1.0, 0.01) is None
+    assert optional_guide(Measurement(0.3, 0.1), 0.0, 1.0, 0.01) == guided(Measurement(0.3, 0.1), 0.0, 1.0)
+    assert optional_guide(Measurement(0.3, 0.1), 0.0, 1.0, 0.2) == guided(Measurement(0.3, 0.2), 0.0, 1.0)
 
 
 def test_shared_parameters_are_distance_and_dust(plain: System) -> None:

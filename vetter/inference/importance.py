@@ -8,7 +8,7 @@ The numbers that are reported come from the last, fresh set of draws only, so th
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import NamedTuple
 
 import numpy as np
@@ -25,6 +25,9 @@ MODE_SHARE = 0.4
 
 MODE_STRETCH = 4.0
 """Variance of the first draws around a polished point over its Gaussian variance: too wide is safer than too narrow."""
+
+LIKELIEST = 12
+"""Prior points kept as starts for the best fit."""
 
 POOLED_RUNGS = 4
 """How many rungs shape the next proposal."""
@@ -49,6 +52,7 @@ class Settings:
     error : largest error of ln evidence to accept
     pareto_k : largest Pareto k to accept
     last_points : most draws in the last round
+    second_effort : whether a run that misses the error or Pareto k, and matters, is repeated with harder settings
     """
 
     start_points: int = 8192
@@ -61,6 +65,17 @@ class Settings:
     error: float = 0.05
     pareto_k: float = 0.7
     last_points: int = 32768
+    second_effort: bool = True
+
+    def harder(self) -> Settings:
+        """Return the settings of a second effort: three times the components, and the draws to shape them."""
+        return replace(
+            self,
+            start_points=2 * self.start_points,
+            rung_points=8 * self.rung_points // 3,
+            components=3 * self.components,
+            last_points=4 * self.last_points,
+        )
 
 
 @dataclass(frozen=True)
@@ -72,21 +87,25 @@ class Posterior:
     x : (n, d) draws in normal coordinates
     ln_weights : (n,) unnormalised ln posterior weights
     modes : (k, d) distinct polished points, most probable first
+    likeliest : (m, d) prior points that fit best, whatever their prior: other modes of the likelihood may be near
     ln_evidence, ln_evidence_error : logarithm of the evidence and its standard error
     effective_sample_size, pareto_k : diagnostics of the weights
     evaluations : points at which the model was evaluated by the sampler (the polishing not counted)
     converged : whether the error and Pareto k are within the settings
+    efforts : 2 where the first run was not good enough and a harder one was made
     """
 
     x: FloatArray
     ln_weights: FloatArray
     modes: FloatArray
+    likeliest: FloatArray
     ln_evidence: float
     ln_evidence_error: float
     effective_sample_size: float
     pareto_k: float
     evaluations: int
     converged: bool
+    efforts: int = 1
 
     @property
     def weights(self) -> FloatArray:
@@ -101,12 +120,28 @@ def sample(problem: Problem, settings: Settings, seed: int, start: FloatArray | 
     Annealed path: Neal 2001 (Statistics and Computing 11, 125); truncated weights while adapting: Ionides 2008
     (J. Comp. Graph. Stat. 17, 295); the mixture proposal: Cappe et al. 2008 (Statistics and Computing 18, 447).
     """
-    rng = np.random.default_rng(seed)
+    return _effort(problem, settings, np.random.default_rng(seed), start)
+
+
+def try_harder(problem: Problem, first: Posterior, settings: Settings, seed: int) -> Posterior:
+    """Return the better of a posterior that has not converged and that of a run with harder settings."""
+    again = _effort(problem, settings.harder(), np.random.default_rng([seed, 2]), None)
+    if again is None:
+        return first
+    better = max(first, again, key=lambda run: (run.converged, run.effective_sample_size))
+    return replace(better, evaluations=first.evaluations + again.evaluations, efforts=2)
+
+
+def _effort(
+    problem: Problem, settings: Settings, rng: np.random.Generator, start: FloatArray | None
+) -> Posterior | None:
+    """One run from the prior to the last round; see :func:`sample`."""
     if start is None:
         start = prior_points(problem.dimension, settings.start_points, rng)
     first = _evaluate(problem, start)
     if not np.isfinite(first).any():
         return None
+    likeliest = _likeliest(problem, start[np.isfinite(first)])
     mixture, modes = _first_proposal(problem, start, first, settings, rng)
     mixture, evaluations = _adapt(problem, mixture, settings, rng)
     x, ln_weights, more = _last_round(problem, mixture, settings, rng)
@@ -117,6 +152,7 @@ def sample(problem: Problem, settings: Settings, seed: int, start: FloatArray | 
         x,
         ln_weights,
         modes,
+        likeliest,
         ln_evidence,
         error,
         effective,
@@ -142,6 +178,14 @@ def _evaluate(problem: Problem, x: FloatArray) -> FloatArray:
     inside = np.all(np.abs(x) <= LARGEST_COORDINATE, axis=1)
     value = ln_likelihood(problem, evaluation.residuals) + evaluation.ln_prior_ratio
     return np.where(inside & ~np.isnan(value), value, -np.inf)
+
+
+def _likeliest(problem: Problem, x: FloatArray) -> FloatArray:
+    """Return the ``LIKELIEST`` points with the least sum of squares, nuisances included."""
+    found = problem.evaluate(x)
+    chi2 = np.einsum("ij,ij->i", found.residuals, found.residuals)
+    chi2 += np.einsum("ij,ij->i", found.nuisances, found.nuisances)
+    return x[np.argsort(chi2, kind="stable")[:LIKELIEST]]
 
 
 def _ln_normal(x: FloatArray) -> FloatArray:

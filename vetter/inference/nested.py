@@ -7,6 +7,7 @@ from typing import NamedTuple
 import numpy as np
 from numpy.typing import NDArray
 
+from vetter.inference.lanes import Lanes
 from vetter.inference.problem import LARGEST_COORDINATE, Problem, ln_likelihood
 
 FloatArray = NDArray[np.float64]
@@ -17,6 +18,10 @@ IMPOSSIBLE = -1e300
 
 FRAME_STRETCH = 4.0
 """The frame reaches this many standard deviations of the expected posterior: wide enough to hold all that matters."""
+
+
+LANES = 50
+"""Walks side by side: few enough beside the live points that hardly any is in vain."""
 
 
 class Frame(NamedTuple):
@@ -45,11 +50,13 @@ def posterior_frame(x: FloatArray, weights: FloatArray) -> Frame:
 
 
 def nested_evidence(
-    problem: Problem, seed: int, frame: Frame | None = None, live_points: int = 400, walks: int = 40
+    problem: Problem, seed: int, frame: Frame | None = None, live_points: int = 400, walks: int = 60
 ) -> NestedEvidence:
     """Return the evidence by static nested sampling (Skilling 2006; dynesty: Speagle 2020, MNRAS 493, 3132).
 
-    One point at a time, as that sampler works. Raises ImportError, naming the extra, when dynesty is not installed.
+    dynesty walks one point at a time; ``LANES`` walks run side by side and their points are evaluated together, which
+    is all that is ours. With 25 steps a walk still remembers where it began, and the evidence of our problems came out
+    0.2 to 0.8 too large; 60 to 80 cured it. Raises ImportError, naming the extra, when dynesty is not installed.
     """
     try:
         from dynesty import NestedSampler
@@ -62,23 +69,26 @@ def nested_evidence(
     def to_normal(unit: FloatArray) -> FloatArray:
         return np.asarray(chosen.centre + chosen.width * ndtri(unit))
 
-    def ln_target(x: FloatArray) -> float:
-        if np.abs(x).max() > LARGEST_COORDINATE:
-            return IMPOSSIBLE
-        found = problem.evaluate(x[None])
+    def ln_target(x: FloatArray) -> FloatArray:
+        found = problem.evaluate(np.clip(x, -LARGEST_COORDINATE, LARGEST_COORDINATE))
         score = (x - chosen.centre) / chosen.width
-        ln_prior_over_frame = 0.5 * np.sum(score**2 - x**2) + np.sum(np.log(chosen.width))
-        value = float((ln_likelihood(problem, found.residuals) + found.ln_prior_ratio)[0] + ln_prior_over_frame)
-        return value if np.isfinite(value) else IMPOSSIBLE
+        ln_prior_over_frame = 0.5 * np.sum(score**2 - x**2, axis=1) + np.sum(np.log(chosen.width))
+        value = ln_likelihood(problem, found.residuals) + found.ln_prior_ratio + ln_prior_over_frame
+        inside = np.abs(x).max(axis=1) <= LARGEST_COORDINATE
+        return np.where(inside & np.isfinite(value), value, IMPOSSIBLE)
 
+    lanes = Lanes(ln_target, LANES)
     sampler = NestedSampler(
-        ln_target,
+        lanes.value,
         to_normal,
         problem.dimension,
         nlive=live_points,
         rstate=np.random.default_rng(seed),
         sample="rwalk",
         walks=walks,
+        pool=lanes,
+        queue_size=LANES,
+        use_pool={"prior_transform": False, "update_bound": False},
     )
     sampler.run_nested(dlogz=0.02, print_progress=False)
     results = sampler.results

@@ -49,17 +49,19 @@ class Context:
         return [distance_parameter(self.system), dust_parameter(self.system)]
 
 
-def build_context(system: System) -> Context:
-    """Return the context of a system: its bands, windows and range of dust decide the light engine."""
+def build_context(system: System, grid: str | None = None) -> Context:
+    """Return the context of a system: its bands, windows and range of dust decide the light engine.
+
+    ``grid`` names atmospheres of the user's own. Raises InputError when there are none of that name.
+    """
     systems = {m.band: m.system for m in system.magnitudes} | {m.band: m.system for m in system.magnitude_limits}
-    bands = list(systems)
-    photocentre = photocentre_band(system)
-    if photocentre is not None and photocentre not in bands:
-        bands.append(photocentre)
+    others = (photocentre_band(system), *(table.band for table in (system.variability, system.imaging) if table))
+    bands = list(dict.fromkeys([*systems, *(band for band in others if band is not None)]))
     windows = list(dict.fromkeys([*(limit.wavelength_nm for limit in system.light_limits), OPTICAL_WINDOW_NM]))
     r_v = 3.1 if system.extinction is None else system.extinction.r_v
+    a_v_max_mag = r_v * ebv_max_mag(system)
     engine = LightEngine.build(
-        bands, windows, r_v=r_v, a_v_max_mag=r_v * ebv_max_mag(system), systems=systems, passbands=system.passbands
+        bands, windows, r_v=r_v, a_v_max_mag=a_v_max_mag, systems=systems, passbands=system.passbands, grid=grid
     )
     return Context(system, engine)
 
@@ -115,6 +117,12 @@ def guided(measured: Measurement, low: float, high: float) -> Guide:
     return Guide(min(max(measured.value, low), high), measured.error, low, high)
 
 
-def optional_guide(measured: Measurement | None, low: float, high: float) -> Guide | None:
-    """Return the guide of a quantity that may not have been measured."""
-    return None if measured is None else guided(measured, low, high)
+def optional_guide(measured: Measurement | None, low: float, high: float, least_scale: float) -> Guide | None:
+    """Return the guide of a quantity that may not have been measured, no narrower than ``least_scale``.
+
+    A second light makes a spectrum far less sure than its errors say. A guide as narrow as those would squeeze the
+    posterior into two horns in the guide's tails, where no proposal finds both.
+    """
+    if measured is None:
+        return None
+    return Guide(min(max(measured.value, low), high), max(measured.error, least_scale), low, high)

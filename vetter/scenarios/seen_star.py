@@ -27,6 +27,9 @@ TEFF_RANGE_K = (2300.0, 60000.0)
 LOGG_RANGE = (-0.5, 5.6)
 FEH_RANGE = (-3.0, 0.6)
 
+LEAST_TEFF_SHARE, LEAST_DEX = 0.015, 0.1
+"""Least scales of the guides: of Teff in units of itself, of log g and [Fe/H]; they change the work, not the answer."""
+
 GIANT_LOGG = 3.0
 """Below this measured log g the seen star is a giant, whose mass its spectrum does not tell."""
 
@@ -154,7 +157,7 @@ class CoolDwarf(SeenStar):
 
     def parameters(self, seen: Primary) -> list[Parameter]:
         """Return [Fe/H] and the scores of the relation."""
-        feh = Parameter("feh", "dex", Uniform(*FEH_RANGE), optional_guide(seen.feh, *FEH_RANGE))
+        feh = Parameter("feh", "dex", Uniform(*FEH_RANGE), optional_guide(seen.feh, *FEH_RANGE, LEAST_DEX))
         return [feh, score("luminosity_score"), score("radius_score")]
 
     @property
@@ -229,10 +232,11 @@ def log_uniform_below(
 
 def spectrum_parameters(seen: Primary) -> list[Parameter]:
     """Return Teff (log-uniform), log g and [Fe/H] (uniform), each guided by its measurement."""
+    teff_scale_k = 0.0 if seen.teff_k is None else LEAST_TEFF_SHARE * seen.teff_k.value
     return [
-        Parameter("teff_k", "K", LogUniform(*TEFF_RANGE_K), optional_guide(seen.teff_k, *TEFF_RANGE_K)),
-        Parameter("logg", "dex", Uniform(*LOGG_RANGE), optional_guide(seen.logg, *LOGG_RANGE)),
-        Parameter("feh", "dex", Uniform(*FEH_RANGE), optional_guide(seen.feh, *FEH_RANGE)),
+        Parameter("teff_k", "K", LogUniform(*TEFF_RANGE_K), optional_guide(seen.teff_k, *TEFF_RANGE_K, teff_scale_k)),
+        Parameter("logg", "dex", Uniform(*LOGG_RANGE), optional_guide(seen.logg, *LOGG_RANGE, LEAST_DEX)),
+        Parameter("feh", "dex", Uniform(*FEH_RANGE), optional_guide(seen.feh, *FEH_RANGE, LEAST_DEX)),
     ]
 
 
