@@ -8,7 +8,7 @@ import numpy as np
 import pytest
 
 from vetter.light.engine import LightEngine
-from vetter.observations.prediction import Prediction
+from vetter.observations.prediction import HiddenStar, InnerOrbit, Prediction
 from vetter.scenarios.context import build_context
 from vetter.system.model import System
 
@@ -26,6 +26,8 @@ ONE_STAR = {
     "k1_km_s": 30.0,
     "inclination_deg": 60.0,
     "photocentre_mas": 2.0,
+    "radius_rsun": 1.0,
+    "separation_rsun": 100.0,
 }
 
 Predict = Callable[..., Prediction]
@@ -40,12 +42,25 @@ def engine(plain: System) -> LightEngine:
 def predict() -> Predict:
     """Return a prediction of as many samples as the longest value given; the rest stays that of a Sun with a rock."""
 
-    def make(ordinary: bool = True, **given: object) -> Prediction:
+    def make(
+        ordinary: bool = True,
+        hidden_stars: tuple[HiddenStar, ...] = (),
+        inner: InnerOrbit | None = None,
+        **given: object,
+    ) -> Prediction:
+        unrelated = given.pop("unrelated_mas", None)
         arrays = {name: np.atleast_1d(np.asarray(value, dtype=float)) for name, value in given.items()}
         n = max((len(values) for values in arrays.values()), default=1)
-        wide = {name: arrays.pop(name, np.zeros((n, 3))) for name in ("magnitudes", "window_ratio")}
+        wide = {name: arrays.pop(name, np.zeros((n, 3))) for name in ("magnitudes", "window_ratio", "band_ratio")}
         full = {name: np.broadcast_to(arrays.pop(name, np.array([value])), n) for name, value in ONE_STAR.items()}
         assert not arrays, f"unknown fields {list(arrays)}"
-        return Prediction(**wide, **full, ordinary_seen_star=ordinary)
+        return Prediction(
+            **wide,
+            **full,
+            ordinary_seen_star=ordinary,
+            hidden_stars=hidden_stars,
+            inner=inner,
+            unrelated_mas=None if unrelated is None else np.asarray(unrelated, dtype=float),
+        )
 
     return make

@@ -35,7 +35,7 @@ def test_names_are_distinct_and_in_order_of_rank() -> None:
     assert len({kind.name for kind in kinds}) == len(kinds)
     assert [kind.rank for kind in kinds] == sorted(kind.rank for kind in kinds)
     assert kinds[0].name == "photometry"
-    assert [kind.name for kind in kinds if not kind.droppable] == ["orbit"]
+    assert [kind.name for kind in kinds if not kind.droppable] == ["orbit", "x_ray"]
 
 
 def test_each_says_what_it_is() -> None:

@@ -30,7 +30,8 @@ def limit_alone(confidence: float) -> PhotometryObservation:
     """A limit of magnitude 20 in column 0, with no model error."""
     none, nowhere = np.zeros(0), np.zeros(0, dtype=np.intp)
     width = np.array([1.0 / stats.norm.ppf(confidence)])
-    return PhotometryObservation(nowhere, none, none, none.astype(bool), np.array([0]), np.array([20.0]), width)
+    never = none.astype(bool)
+    return PhotometryObservation(nowhere, none, none, never, never, np.array([0]), np.array([20.0]), width)
 
 
 def test_ln_likelihood_is_the_sum_of_normal_log_densities(plain: System, engine: LightEngine, predict: Predict) -> None:
@@ -95,6 +96,28 @@ def test_ultraviolet_of_a_hot_star_counts_both_ways(plain: System, predict: Pred
     found = observation.residuals(predict(magnitudes=[[11.35, 11.18, 9.80, 17.0]]))[0, 3]
     assert found == pytest.approx(1.0 / observation.sigma_mag[3])
     assert observation.cautions(plain) == []
+
+
+INFRARED = ("2MASS/2MASS.H", "WISE/WISE.W1", "WISE/WISE.W4", "Spitzer/IRAC.I2")
+
+
+@pytest.mark.parametrize("emission_lines", [True, False])
+def test_infrared_of_a_star_with_emission_lines_counts_on_one_side(
+    emission_lines: bool, plain: System, predict: Predict
+) -> None:
+    """Beyond 3 micron only: not in H, and not at all without the flag."""
+    magnitudes = (*plain.magnitudes, *(Magnitude(band, 9.7, 0.03, "Vega") for band in INFRARED))
+    primary = replace(plain.primary, emission_lines=emission_lines)
+    observation = of(replace(plain, magnitudes=magnitudes, primary=primary))
+    model = np.tile([11.35, 11.18, 9.80, *[9.7] * len(INFRARED)], (3, 1))
+    model[:, 3:] += np.array([-0.5, 0.0, 0.5])[:, None]
+    found = observation.residuals(predict(magnitudes=model))[:, 3:] * observation.sigma_mag[3:]
+    np.testing.assert_allclose(found[:2], [[-0.5] * 4, [0.0] * 4], atol=1e-12)
+    excess = 0.0 if emission_lines else 0.5
+    np.testing.assert_allclose(found[2], [0.5, excess, excess, excess], atol=1e-12)
+    said = observation.cautions(plain)
+    assert len(said) == emission_lines
+    assert not said or "emission lines" in said[0]
 
 
 @pytest.mark.parametrize("confidence", [0.9, 0.95, 0.9973])

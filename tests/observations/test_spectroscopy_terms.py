@@ -77,6 +77,19 @@ def test_the_grown_error_is_not_charged_its_normalisation(predict: Predict) -> N
     np.testing.assert_array_equal(alone, blended)
 
 
+@pytest.mark.parametrize("ratio", [0.0, 0.05, 0.3, 2.0])
+def test_in_the_evidence_the_likelihood_is_a_density(ratio: float, predict: Predict) -> None:
+    """Summed over everything that could have been measured it is one, however much the second light blurs."""
+    predicted = predict(teff_k=6000.0, optical_ratio=ratio, companion_teff_k=30000.0, companion_logg=4.0)
+    measured = np.linspace(-2e5, 2e5, 400001)
+    narrowing = SpectroscopyObservation(Measurement(5960.0, 80.0), None, None).ln_narrowing(predicted)[0]
+    width = 80.0 * np.exp(-narrowing)
+    residual = SpectroscopyObservation(Measurement(6000.0 + width, 80.0), None, None).residuals(predicted)[0, 0]
+    assert residual == pytest.approx(-1.0)
+    density = stats.norm.pdf(0.0, 0.0, 80.0) * np.exp(-0.5 * ((6000.0 - measured) / width) ** 2 + narrowing)
+    assert np.trapezoid(density, measured) == pytest.approx(1.0, rel=1e-6)
+
+
 @given(st.floats(0.0, 1e6))
 def test_share_is_the_light_beyond_a_tenth(ratio: float) -> None:
     found = second_light_share(np.array([ratio]))[0]

@@ -8,6 +8,7 @@ from __future__ import annotations
 import importlib
 import pkgutil
 from abc import ABC, abstractmethod
+from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, ClassVar, Self
 
@@ -60,6 +61,13 @@ class Observation(ABC):
     def residuals(self, predicted: Prediction) -> FloatArray:
         """Return standardised residuals (n, k) for n predicted samples."""
 
+    def ln_narrowing(self, predicted: Prediction) -> FloatArray:
+        """Return ln(quoted error / error used) (n,), at most 0, summed over data whose error a prediction enlarges.
+
+        Zero by default. It counts in the evidence only: a wider density must be lower, or being vague would pay.
+        """
+        return np.zeros(predicted.distance_pc.shape)
+
     def describe(self) -> str:
         """Return the datum in a word or two, for the list of what was used."""
         return self.label
@@ -71,6 +79,13 @@ class Observation(ABC):
 
     def cautions(self, system: System) -> list[str]:
         """Return what a reader must know about this datum; nothing by default."""
+        return []
+
+    def report(self, best: Mapping[str, Prediction]) -> list[str]:
+        """Return what explanations predict for a datum that is no part of the likelihood; nothing by default.
+
+        ``best`` maps the title of each explanation that stands to its most favourable case, one sample.
+        """
         return []
 
 

@@ -20,7 +20,12 @@ FloatArray = NDArray[np.float64]
 CHROMOSPHERE_BELOW_K = 7000.0
 """Below this Teff a star may shine more in the ultraviolet than its photosphere (common practice, no source)."""
 
-ULTRAVIOLET = ("GALEX/GALEX.FUV", "GALEX/GALEX.NUV", "Swift/UVOT.UVW2", "Swift/UVOT.UVM2", "Swift/UVOT.UVW1")
+ULTRAVIOLET_BELOW_ANGSTROM = 3000.0
+"""Pivot wavelength below which a chromosphere counts: GALEX and the three blue bands of Swift."""
+
+INFRARED_FROM_ANGSTROM = 30000.0
+"""Pivot wavelength from which gas around a star with emission lines may outshine its surface (common practice, no
+source): WISE and Spitzer, not Ks."""
 
 
 @register
@@ -35,7 +40,8 @@ class PhotometryObservation(Observation):
     ----------
     index : (k,) column of each measured magnitude among the engine's bands
     mag, sigma_mag : (k,)
-    one_sided : (k,) True where the star may be brighter than the model (chromosphere), never fainter
+    chromospheric, with_excess : (k,) True where the star may be brighter than the model but not fainter: ultraviolet
+        of a cool star, and infrared of a star with emission lines
     limit_index, limit_mag : (l,)
     limit_width : (l,) width of the limit as a fraction of the limiting flux
     """
@@ -46,7 +52,8 @@ class PhotometryObservation(Observation):
     index: NDArray[np.intp]
     mag: FloatArray
     sigma_mag: FloatArray
-    one_sided: NDArray[np.bool_]
+    chromospheric: NDArray[np.bool_]
+    with_excess: NDArray[np.bool_]
     limit_index: NDArray[np.intp]
     limit_mag: FloatArray
     limit_width: FloatArray
@@ -64,12 +71,14 @@ class PhotometryObservation(Observation):
         error = np.array([m.error_mag for m in measured])
         # One-sided, in units of the limiting flux: the error that makes this confidence, with the model's own error.
         limit_error = np.array([1.0 / ndtri(m.confidence) for m in limits])
-        cool = system.primary.teff_k is not None and system.primary.teff_k.value < CHROMOSPHERE_BELOW_K
+        seen, pivot = system.primary, np.array(engine.pivots_angstrom)[index]
+        cool = seen.teff_k is not None and seen.teff_k.value < CHROMOSPHERE_BELOW_K
         return cls(
             index,
             np.array([m.mag for m in measured]),
             np.hypot(error, model_error[index]),
-            np.array([cool and m.band in ULTRAVIOLET for m in measured], dtype=bool),
+            cool & (pivot < ULTRAVIOLET_BELOW_ANGSTROM),
+            seen.emission_lines & (pivot >= INFRARED_FROM_ANGSTROM),
             limit_index,
             np.array([m.fainter_than_mag for m in limits]),
             np.hypot(limit_error, 0.4 * np.log(10.0) * model_error[limit_index]),
@@ -89,7 +98,7 @@ class PhotometryObservation(Observation):
         """Return (n, k + l); negative where the model is brighter than the measurement."""
         model = predicted.magnitudes
         gaussian = (model[:, self.index] - self.mag) / self.sigma_mag
-        gaussian = np.where(self.one_sided, np.minimum(gaussian, 0.0), gaussian)
+        gaussian = np.where(self.chromospheric | self.with_excess, np.minimum(gaussian, 0.0), gaussian)
         if self.limit_mag.size == 0:
             return gaussian
         return np.concatenate([gaussian, self._limit_residuals(model[:, self.limit_index])], axis=1)
@@ -109,13 +118,19 @@ class PhotometryObservation(Observation):
         return words if limits == 0 else f"{words}, {limits} magnitude limit{'s' if limits > 1 else ''}"
 
     def cautions(self, system: System) -> list[str]:
-        """Return the caution for the ultraviolet of cool stars, where it applies."""
-        if not self.one_sided.any():
-            return []
-        return [
-            "The ultraviolet of a star this cool is partly chromospheric: those magnitudes count only where a model "
-            "is brighter than the measurement, so they cannot show a hot companion."
-        ]
+        """Return the cautions for magnitudes that count on one side only, where there are any."""
+        said = []
+        if self.chromospheric.any():
+            said.append(
+                "The ultraviolet of a star this cool is partly chromospheric: those magnitudes count only where a "
+                "model is brighter than the measurement, so they cannot show a hot companion."
+            )
+        if self.with_excess.any():
+            said.append(
+                "The seen star has emission lines: its magnitudes beyond 3 micron count only where a model is brighter "
+                "than the measurement, so they cannot show a cool companion."
+            )
+        return said
 
 
 def model_errors_mag(system: System, engine: LightEngine) -> FloatArray:

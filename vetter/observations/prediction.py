@@ -3,11 +3,30 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TYPE_CHECKING, NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
 
+if TYPE_CHECKING:
+    from vetter.light.engine import Component
+
 FloatArray = NDArray[np.float64]
+
+
+class HiddenStar(NamedTuple):
+    """One star that shines on the companion's orbit: its body (n,) and, per band (n, bands), its flux / seen star's."""
+
+    body: Component
+    band_ratio: FloatArray
+
+
+class InnerOrbit(NamedTuple):
+    """The orbit (n,) inside a companion that is a pair: masses in Msun, in the order of ``hidden_stars``, and days."""
+
+    first_msun: FloatArray
+    second_msun: FloatArray
+    period_d: FloatArray
 
 
 @dataclass(frozen=True)
@@ -25,6 +44,11 @@ class Prediction:
     mass_msun, companion_mass_msun : (n,)
     k1_km_s, inclination_deg, photocentre_mas : (n,) of the orbit; inclination folded into 0-90 degrees
     ordinary_seen_star : whether the seen star is what it looks like, so that an outside mass estimate applies
+    radius_rsun, separation_rsun : (n,) of the seen star, and semi-major axis of the relative orbit
+    band_ratio : (n, bands) flux of everything beside the seen star / seen star's flux
+    hidden_stars : the stars that shine on the companion's orbit; none for a dark companion or an unrelated star
+    inner : the companion's own orbit where it is a pair whose period is predicted
+    unrelated_mas : (n,) distance on the sky of a star that is free of the orbit; None where there is none
     """
 
     magnitudes: FloatArray
@@ -43,3 +67,9 @@ class Prediction:
     inclination_deg: FloatArray
     photocentre_mas: FloatArray
     ordinary_seen_star: bool
+    radius_rsun: FloatArray
+    separation_rsun: FloatArray
+    band_ratio: FloatArray
+    hidden_stars: tuple[HiddenStar, ...] = ()
+    inner: InnerOrbit | None = None
+    unrelated_mas: FloatArray | None = None

@@ -5,8 +5,20 @@ from __future__ import annotations
 from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
+from vetter.light.user_grids import SHIPPED
 from vetter.observations.base import Observation
 from vetter.observations.spectroscopy import DILUTION_FROM
+from vetter.observations.velocities import epoch_cautions
+from vetter.results.age_cautions import age_cautions
+from vetter.results.best_cases import best_cases
+from vetter.results.dust_caution import dust_caution
+from vetter.results.fit_cautions import (
+    extrapolation_cautions,
+    missed_cautions,
+    parallax_cautions,
+    significance_cautions,
+)
+from vetter.results.stripped_cautions import stripped_cautions
 from vetter.results.verdicts import ScenarioVerdict
 from vetter.scenarios.context import ASTROMETRY_BAND, Context, ebv_max_mag
 from vetter.system.keys import SCENARIO_NAMES
@@ -15,7 +27,7 @@ if TYPE_CHECKING:
     from vetter.evaluation import ScenarioRun
 
 SOLAR_TABLE_FEH = 0.3
-"""Beyond this |[Fe/H]| the colours of a solar table are no longer good to its quoted error."""
+"""Beyond this |[Fe/H]| what metallicity does to the light is worth a word."""
 
 
 def cautions(
@@ -28,10 +40,17 @@ def cautions(
     ]
     said += _not_tried(runs)
     said += _about_input(context)
+    said += significance_cautions(context.system)
     for observation in observations:
         said += observation.cautions(context.system)
-    said += _about_fits(rows)
-    said += _about_sampling(rows)
+    cases = best_cases(runs, rows)
+    said += parallax_cautions(context, cases) + missed_cautions(observations, cases)
+    said += about_fits(rows) + extrapolation_cautions(context, cases)
+    said += age_cautions(context.system, cases) + stripped_cautions(runs, cases)
+    said += dust_caution(context, observations, cases)
+    for observation in observations:
+        said += observation.report({case.title: case.prediction for case in cases if case.stands})
+    said += about_sampling(rows)
     return said
 
 
@@ -47,25 +66,35 @@ def _not_tried(runs: Sequence[ScenarioRun]) -> list[str]:
 def _about_input(context: Context) -> list[str]:
     """Things the input left open, or outside the range of the tables."""
     system = context.system
-    said = []
+    said = epoch_cautions(system)
     if not system.orbit.eccentricity_given:
         said.append("No eccentricity was given: the orbit was taken as circular.")
     if system.orbit.thiele_innes is not None and system.orbit.photocentre_band is None:
         said.append(f"No band was given for the Thiele-Innes elements: {ASTROMETRY_BAND} was taken.")
     if system.extinction is None:
         said.append(f"Nothing was given on dust: E(B-V) was free between 0 and {ebv_max_mag(system):g} mag.")
-    feh = system.primary.feh
-    if feh is not None and abs(feh.value) > SOLAR_TABLE_FEH:
-        said.append(
-            f"The light tables are of solar composition; at [Fe/H] {feh.value:+.2f} the model error was enlarged, "
-            "most of all in the ultraviolet and blue."
-        )
+    said += light_cautions(context)
     if system.primary.teff_k is None:
         said.append("No Teff was given: the seen star's kind was left to the magnitudes.")
     return said
 
 
-def _about_fits(rows: Sequence[ScenarioVerdict]) -> list[str]:
+def light_cautions(context: Context) -> list[str]:
+    """Whose atmospheres were used, and which bands do not know of the seen star's metallicity."""
+    engine, feh = context.engine, context.system.primary.feh
+    said = []
+    if engine.grid != SHIPPED:
+        said.append(f"The light of stars is that of your own atmospheres {engine.grid!r} where they reach.")
+    solar = [band for band in engine.bands if not engine.metallicity_known(band)]
+    if feh is not None and abs(feh.value) > SOLAR_TABLE_FEH and solar:
+        said.append(
+            f"The seen star has [Fe/H] {feh.value:+.2f}, but outside 470-1000 nm the light is that of solar "
+            f"composition; the model error was enlarged in {', '.join(solar)}."
+        )
+    return said
+
+
+def about_fits(rows: Sequence[ScenarioVerdict]) -> list[str]:
     """Best fits on the edge of a prior, and spectra that a second star would have blended."""
     edges, blended = [], []
     for row in rows:
@@ -95,7 +124,7 @@ def _about_fits(rows: Sequence[ScenarioVerdict]) -> list[str]:
     return said
 
 
-def _about_sampling(rows: Sequence[ScenarioVerdict]) -> list[str]:
+def about_sampling(rows: Sequence[ScenarioVerdict]) -> list[str]:
     """Evidences that did not reach the wanted precision."""
     poor = []
     for row in rows:

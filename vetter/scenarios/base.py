@@ -21,7 +21,7 @@ from numpy.typing import NDArray
 from vetter.light.engine import Component
 from vetter.observations.astrometry import measured_inclination
 from vetter.observations.orbit import k1_error_km_s
-from vetter.observations.prediction import Prediction
+from vetter.observations.prediction import HiddenStar, InnerOrbit, Prediction
 from vetter.physics import kepler, roche
 from vetter.scenarios.context import Context
 from vetter.scenarios.orbit import CompanionDraw, OrbitDraws
@@ -55,11 +55,13 @@ class Companion:
     components : the stars that shine, none for a dark companion
     radius_rsun : (n,) size for the Roche wall, None where the companion is a point
     walls : regions closed by the companion's own physics
+    unrelated_mas : (n,) distance on the sky where the light is that of a star free of the orbit; else None
     """
 
     components: tuple[Component, ...] = ()
     radius_rsun: FloatArray | None = None
     walls: tuple[Wall, ...] = ()
+    unrelated_mas: FloatArray | None = None
 
 
 class OuterOrbit(NamedTuple):
@@ -80,12 +82,14 @@ class Scenario(ABC):
     title : as printed
     rank : place in the table, ordinary explanations first
     ordinary : True when no compact remnant beyond the white dwarf is involved
+    on_request : True for a row that is tried only when it is asked for
     """
 
     name: ClassVar[str]
     title: ClassVar[str]
     rank: ClassVar[int]
     ordinary: ClassVar[bool]
+    on_request: ClassVar[bool] = False
 
     @abstractmethod
     def mass_prior(self, assumptions: Assumptions) -> LogUniform | Uniform:
@@ -104,6 +108,15 @@ class Scenario(ABC):
     ) -> tuple[Wall, ...]:
         """Return walls that need the outer orbit; none by default. Derived quantities may be added to ``draws``."""
         return ()
+
+    def inner_masses_msun(
+        self, mass_msun: FloatArray, draws: Mapping[str, FloatArray]
+    ) -> tuple[FloatArray, FloatArray] | None:
+        """Return the masses (n,) of both stars of a companion that is a pair with ``inner_period_d`` in ``draws``.
+
+        In the order of the companion's components. None by default.
+        """
+        return None
 
     def branches(self, context: Context) -> list[Branch]:
         """Return the discrete variants that are run separately; their evidences are averaged."""
@@ -166,9 +179,9 @@ class Branch:
             ln_ratio = ln_ratio + ratio
         star, orbit, walls = self._masses(draws, x)
         companion = self.scenario.companion(orbit.mass_msun, star.feh, draws)
+        orbit_walls = self.scenario.orbit_walls(companion, self._outer_orbit(star, orbit), draws)
         prediction = self._predict(draws, star, orbit, companion)
-        walls += [*self._walls(star, orbit, companion, prediction), *companion.walls]
-        walls += self.scenario.orbit_walls(companion, self._outer_orbit(star, orbit), draws)
+        walls += [*self._walls(star, orbit, companion, prediction), *companion.walls, *orbit_walls]
         ln_ratio = ln_ratio + star.ln_ratio + orbit.ln_ratio
         for wall in walls:
             ln_ratio = np.where(wall.excess > 0.0, -np.inf, ln_ratio)
@@ -210,10 +223,9 @@ class Branch:
             Component("star", star.teff_k, star.logg, star.feh, star.radius_rsun), distance_pc, r_v * ebv_mag
         )
         others = [engine.magnitudes(component, distance_pc, r_v * ebv_mag) for component in companion.components]
-        ratio = sum((10.0 ** (0.4 * (seen - other)) for other in others), start=np.zeros(seen.shape))
+        ratios = [10.0 ** (0.4 * (seen - other)) for other in others]
+        ratio = sum(ratios, start=np.zeros(seen.shape))
         bands = len(engine.bands)
-        column = self.context.photocentre_column
-        photocentre_ratio = np.zeros(len(distance_pc)) if column is None else ratio[:, column]
         brightest = _brightest(companion, others, self.context.optical_column)
         dark = np.full(len(distance_pc), np.nan)
         sin_i = np.sqrt(1.0 - orbit.cos_inclination**2)
@@ -233,15 +245,36 @@ class Branch:
             companion_mass_msun=orbit.mass_msun,
             k1_km_s=kepler.semi_amplitude_km_s(star.mass_msun, orbit.mass_msun, period_d, sin_i, e),
             inclination_deg=np.degrees(np.arccos(orbit.cos_inclination)),
-            photocentre_mas=kepler.photocentre_mas(
-                1000.0 / distance_pc,
-                kepler.separation_au(star.mass_msun + orbit.mass_msun, period_d),
-                star.mass_msun,
-                orbit.mass_msun,
-                photocentre_ratio,
-            ),
+            photocentre_mas=self._photocentre_mas(star, orbit, companion, distance_pc, ratio),
             ordinary_seen_star=self.seen.ordinary,
+            radius_rsun=star.radius_rsun,
+            separation_rsun=kepler.separation_rsun(star.mass_msun + orbit.mass_msun, period_d),
+            band_ratio=ratio[:, :bands],
+            hidden_stars=_hidden_stars(companion, ratios, bands),
+            inner=self._inner_orbit(orbit, draws),
+            unrelated_mas=companion.unrelated_mas,
         )
+
+    def _photocentre_mas(
+        self,
+        star: SeenStarState,
+        orbit: CompanionDraw,
+        companion: Companion,
+        distance_pc: FloatArray,
+        ratio: FloatArray,
+    ) -> FloatArray:
+        """Photocentre's semi-major axis; light that is free of the orbit dilutes it and does not move."""
+        column = self.context.photocentre_column
+        flux_ratio = np.zeros(len(distance_pc)) if column is None else ratio[:, column]
+        separation = kepler.separation_au(star.mass_msun + orbit.mass_msun, self.context.system.orbit.period_d.value)
+        geometry = (1000.0 / distance_pc, separation, star.mass_msun, orbit.mass_msun)
+        if companion.unrelated_mas is None:
+            return kepler.photocentre_mas(*geometry, flux_ratio)
+        return kepler.photocentre_mas(*geometry) / (1.0 + flux_ratio)
+
+    def _inner_orbit(self, orbit: CompanionDraw, draws: Mapping[str, FloatArray]) -> InnerOrbit | None:
+        masses = self.scenario.inner_masses_msun(orbit.mass_msun, draws)
+        return None if masses is None else InnerOrbit(*masses, draws["inner_period_d"])
 
     def _walls(
         self, star: SeenStarState, orbit: CompanionDraw, companion: Companion, prediction: Prediction
@@ -249,8 +282,8 @@ class Branch:
         """Walls that hold for every scenario."""
         system = self.context.system
         largest = system.assumptions.companion_to_seen_light_max
-        period_d, e = system.orbit.period_d.value, system.orbit.eccentricity.value
-        separation_rsun = kepler.separation_rsun(star.mass_msun + orbit.mass_msun, period_d)
+        e = system.orbit.eccentricity.value
+        separation_rsun = prediction.separation_rsun
         lobe = roche.roche_lobe_rsun(star.mass_msun, orbit.mass_msun, separation_rsun, e)
         walls = [Wall(np.log(star.radius_rsun / lobe), "the seen star would overflow its Roche lobe")]
         if companion.components:
@@ -274,6 +307,13 @@ def _brightest(companion: Companion, magnitudes: list[FloatArray], column: int) 
         return np.asarray(np.choose(which, [getattr(component, name) for component in companion.components]))
 
     return Component("star", pick("teff_k"), pick("logg"), pick("feh"), pick("radius_rsun"))
+
+
+def _hidden_stars(companion: Companion, ratios: list[FloatArray], bands: int) -> tuple[HiddenStar, ...]:
+    """The components that move with the companion, with their light in the bands."""
+    if companion.unrelated_mas is not None:
+        return ()
+    return tuple(HiddenStar(body, r[:, :bands]) for body, r in zip(companion.components, ratios, strict=True))
 
 
 def _derived(
@@ -304,10 +344,14 @@ def register(cls: type[Scenario]) -> type[Scenario]:
     return cls
 
 
-def registered() -> dict[str, Scenario]:
-    """Return every registered scenario by name in order of rank, importing the modules of this package first."""
+def registered(on_request: bool = False) -> dict[str, Scenario]:
+    """Return the registered scenarios by name in order of rank, importing the modules of this package first.
+
+    Those that run only on request are left out unless ``on_request``.
+    """
     package = importlib.import_module("vetter.scenarios")
     for module in pkgutil.iter_modules(package.__path__):
         importlib.import_module(f"vetter.scenarios.{module.name}")
     ordered = sorted(_REGISTRY.values(), key=lambda cls: (cls.rank, cls.name))
+    ordered = [cls for cls in ordered if on_request or not cls.on_request]
     return {cls.name: cls() for cls in ordered}

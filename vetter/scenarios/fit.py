@@ -51,8 +51,9 @@ class Fit:
         sampled = self.sample(x)
         with np.errstate(all="ignore"):
             columns = [observation.residuals(sampled.prediction) for observation in self.observations]
+            narrowing = sum(observation.ln_narrowing(sampled.prediction) for observation in self.observations)
         excess = np.max([wall.excess for wall in sampled.walls], axis=0)
-        return Evaluation(np.concatenate(columns, axis=1), sampled.nuisances, sampled.ln_ratio, excess)
+        return Evaluation(np.concatenate(columns, axis=1), sampled.nuisances, sampled.ln_ratio + narrowing, excess)
 
     def columns_of(self, x: FloatArray) -> dict[str, slice]:
         """Return which residual columns belong to which observation; ``x`` (1, dimension) is any point."""

@@ -48,20 +48,25 @@ class InnerPair(Scenario):
 
     def companion(self, mass_msun: FloatArray, feh: FloatArray, draws: Mapping[str, FloatArray]) -> Companion:
         """Return both stars; they share age fraction, scatter and [Fe/H]."""
-        ratio = draws["inner_mass_ratio"]
-        heavier, lighter = mass_msun / (1.0 + ratio), mass_msun * ratio / (1.0 + ratio)
+        heavier, lighter = self.inner_masses_msun(mass_msun, draws)
         shared = (feh, draws["companion_luminosity_score"], draws["companion_radius_score"])
         stars = [main_sequence(mass, draws["companion_life_fraction"], *shared) for mass in (heavier, lighter)]
         lights = tuple(Component("star", star.teff_k, star.logg, feh, star.radius_rsun) for star in stars)
         excess = np.log(np.maximum(heavier / HEAVIEST_STAR_MSUN, LIGHTEST_STAR_MSUN / np.maximum(lighter, 1e-9)))
         return Companion(lights, walls=(Wall(excess, "no two main-sequence stars add up to that mass"),))
 
+    def inner_masses_msun(
+        self, mass_msun: FloatArray, draws: Mapping[str, FloatArray]
+    ) -> tuple[FloatArray, FloatArray]:
+        """Return the heavier and the lighter mass (n,)."""
+        ratio = draws["inner_mass_ratio"]
+        return mass_msun / (1.0 + ratio), mass_msun * ratio / (1.0 + ratio)
+
     def orbit_walls(
         self, companion: Companion, outer: OuterOrbit, draws: MutableMapping[str, FloatArray]
     ) -> tuple[Wall, ...]:
         """Return the wall between contact and the stability limit, and add the inner period to ``draws``."""
-        ratio = draws["inner_mass_ratio"]
-        heavier = outer.companion_mass_msun / (1.0 + ratio)
+        heavier, _ = self.inner_masses_msun(outer.companion_mass_msun, draws)
         return (inner_orbit(companion, heavier, outer, draws),)
 
 
@@ -107,11 +112,18 @@ class InnerPairWithWhiteDwarf(Scenario):
         )
         return Companion(lights, walls=(Wall(excess, "too little mass is left for a star beside the white dwarf"),))
 
+    def inner_masses_msun(
+        self, mass_msun: FloatArray, draws: Mapping[str, FloatArray]
+    ) -> tuple[FloatArray, FloatArray]:
+        """Return the masses (n,) of the star and of the white dwarf."""
+        white = draws["white_dwarf_mass_msun"]
+        return np.maximum(mass_msun - white, LIGHTEST_STAR_MSUN), white
+
     def orbit_walls(
         self, companion: Companion, outer: OuterOrbit, draws: MutableMapping[str, FloatArray]
     ) -> tuple[Wall, ...]:
         """Return the wall between contact and the stability limit, and add the inner period to ``draws``."""
-        star = np.maximum(outer.companion_mass_msun - draws["white_dwarf_mass_msun"], LIGHTEST_STAR_MSUN)
+        star, _ = self.inner_masses_msun(outer.companion_mass_msun, draws)
         return (inner_orbit(companion, star, outer, draws),)
 
 
