@@ -39,7 +39,17 @@ SCENARIO_KEYS = {
     "best_fit",
 }
 MORE_TOP_KEYS = {"orbit", "nothing_fits", "headline", "prior_odds"}
-MORE_SCENARIO_KEYS = {"closed_because", "best_fit_magnitudes", "at_prior_edge", "priors", "seen_star"}
+MORE_SCENARIO_KEYS = {
+    "closed_because",
+    "best_fit_magnitudes",
+    "best_fit_light_ratio",
+    "best_fit_residuals",
+    "best_fit_hidden_stars",
+    "companion_mass_density",
+    "at_prior_edge",
+    "priors",
+    "seen_star",
+}
 DIAGNOSTIC_KEYS = {"effective_sample_size", "pareto_k", "method"}
 
 

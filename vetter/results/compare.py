@@ -11,6 +11,8 @@ from numpy.typing import NDArray
 
 from vetter.observations.base import Observation
 from vetter.physics import kepler
+from vetter.results.best_cases import predicted_signals
+from vetter.results.best_details import hidden_lights, light_ratios, mass_density, residuals_by_datum
 from vetter.results.cautions import cautions
 from vetter.results.verdicts import (
     BestFit,
@@ -27,9 +29,6 @@ if TYPE_CHECKING:
     from vetter.evaluation import BranchRun, ScenarioRun
 
 FloatArray = NDArray[np.float64]
-
-NOT_FITTED = ("variability", "x_ray", "imaging")
-"""Tables of the system file that are read but that no observation uses yet."""
 
 EDGE_MASS = 0.002
 """A best companion mass this close to the end of its range, as a fraction, sits on its edge."""
@@ -127,6 +126,7 @@ def _row(
         closed_because=best.closed_because if closed else None,
         priors={p.name: p.prior.describe(p.unit) for p in best.fit.branch.parameters},
         seen_star=best.fit.branch.seen.words,
+        mass_density=None if evidence is None else mass_density(run),
     )
 
 
@@ -170,7 +170,7 @@ def _diagnostics(run: ScenarioRun) -> Diagnostics:
         round(posterior.effective_sample_size, 1),
         round(posterior.pareto_k, 3) if np.isfinite(posterior.pareto_k) else None,
         evaluations,
-        "adaptive importance sampling",
+        "adaptive importance sampling" + (", second effort" if posterior.efforts > 1 else ""),
         posterior.converged,
     )
 
@@ -180,6 +180,9 @@ def _best_fit(branch: BranchRun, context: Context) -> BestFit:
     sampled = branch.fit.sample(branch.best_x[None])
     values = {name: float(value[0]) for name, value in sampled.values.items()}
     values["optical_light_ratio"] = float(sampled.prediction.optical_ratio[0])
+    if context.photocentre_column is not None:
+        values["photocentre_mas"] = float(sampled.prediction.photocentre_mas[0])
+    values |= predicted_signals(sampled.prediction, context)
     magnitudes = dict(zip(context.engine.bands, sampled.prediction.magnitudes[0].tolist(), strict=True))
     parameters = branch.fit.branch.free_parameters
     edges = [
@@ -190,7 +193,14 @@ def _best_fit(branch: BranchRun, context: Context) -> BestFit:
     prior = branch.fit.branch.orbit_draws.prior
     if not prior.low * (1.0 + EDGE_MASS) < values["m2_msun"] < prior.high * (1.0 - EDGE_MASS):
         edges.append("companion_mass_msun")
-    return BestFit(values, magnitudes, tuple(edges))
+    return BestFit(
+        values,
+        magnitudes,
+        tuple(edges),
+        light_ratios(sampled.prediction, context),
+        residuals_by_datum(branch, context, sampled.prediction),
+        hidden_lights(sampled.prediction, context),
+    )
 
 
 def absent_observations(context: Context, observations: Sequence[Observation]) -> tuple[str, ...]:
@@ -198,9 +208,7 @@ def absent_observations(context: Context, observations: Sequence[Observation]) -
     from vetter.observations.base import registered
 
     used = {observation.name for observation in observations}
-    system = context.system
-    absent = [kind.name for kind in registered() if kind.name not in used]
-    return tuple(absent + [name for name in NOT_FITTED if name not in absent and getattr(system, name) is None])
+    return tuple(kind.name for kind in registered() if kind.name not in used)
 
 
 def orbit_summary(context: Context, runs: Sequence[ScenarioRun]) -> OrbitSummary:

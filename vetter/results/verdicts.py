@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import Any
 
 EXCLUDED_SIGMA = 5.0
@@ -33,6 +33,26 @@ class Diagnostics:
 
 
 @dataclass(frozen=True)
+class HiddenLight:
+    """A star that shines on the companion's orbit; ``band_ratio`` is its flux over the seen star's, by band."""
+
+    kind: str
+    teff_k: float
+    logg: float
+    radius_rsun: float
+    mass_msun: float | None
+    band_ratio: Mapping[str, float]
+
+
+@dataclass(frozen=True)
+class MassDensity:
+    """A posterior of the companion's mass as a histogram: n + 1 edges (Msun) and n densities (per Msun)."""
+
+    edges_msun: tuple[float, ...]
+    per_msun: tuple[float, ...]
+
+
+@dataclass(frozen=True)
 class BestFit:
     """The most favourable case of a scenario.
 
@@ -41,11 +61,17 @@ class BestFit:
     values : parameters and derived quantities by name
     magnitudes : total magnitude per engine band
     at_edge : names of parameters that sit on the edge of their prior
+    light_ratio : light beside the seen star over the seen star's, by band and by window
+    residuals : observation -> datum -> (model - measured) / error
+    hidden_stars : the stars that shine on the companion's orbit
     """
 
     values: Mapping[str, float]
     magnitudes: Mapping[str, float]
     at_edge: tuple[str, ...] = ()
+    light_ratio: Mapping[str, float] = field(default_factory=dict)
+    residuals: Mapping[str, Mapping[str, float]] = field(default_factory=dict)
+    hidden_stars: tuple[HiddenLight, ...] = ()
 
 
 @dataclass(frozen=True)
@@ -72,6 +98,7 @@ class ScenarioVerdict:
     closed_because: str | None
     priors: Mapping[str, str]
     seen_star: str
+    mass_density: MassDensity | None = None
 
     def to_dict(self) -> dict[str, Any]:
         """Return the scenario's part of verdicts.json."""
@@ -97,6 +124,10 @@ class ScenarioVerdict:
             "best_fit": None if best is None else dict(best.values),
             "best_fit_magnitudes": None if best is None else dict(best.magnitudes),
             "at_prior_edge": [] if best is None else list(best.at_edge),
+            "best_fit_light_ratio": None if best is None else dict(best.light_ratio),
+            "best_fit_residuals": None if best is None else {name: dict(r) for name, r in best.residuals.items()},
+            "best_fit_hidden_stars": [] if best is None else [vars(star) for star in best.hidden_stars],
+            "companion_mass_density": None if self.mass_density is None else vars(self.mass_density),
             "priors": dict(self.priors),
             "seen_star": self.seen_star,
         }
