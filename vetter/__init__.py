@@ -1,7 +1,8 @@
 """vetter: which ordinary explanations of an unseen stellar companion do the measurements exclude, and why.
 
 The public interface: :func:`read_system` reads a system file, :func:`evaluate` fits every scenario to it and returns
-:class:`Verdicts`; :class:`InputError` is raised for bad input.
+:class:`Verdicts`; :func:`contrast` sets an inner pair against a single companion; :class:`InputError` is raised for bad
+input.
 """
 
 from __future__ import annotations
@@ -11,14 +12,16 @@ from typing import TYPE_CHECKING
 if TYPE_CHECKING:
     from vetter.errors import InputError
     from vetter.evaluation import evaluate
+    from vetter.pairs.contrast import contrast
     from vetter.results.verdicts import Verdicts
     from vetter.system.reader import read_system
 
-__all__ = ["InputError", "Verdicts", "evaluate", "read_system"]
+__all__ = ["InputError", "Verdicts", "contrast", "evaluate", "read_system"]
 
 _HOME = {
     "InputError": "vetter.errors",
     "Verdicts": "vetter.results.verdicts",
+    "contrast": "vetter.pairs.contrast",
     "evaluate": "vetter.evaluation",
     "read_system": "vetter.system.reader",
 }

@@ -11,7 +11,12 @@ from hypothesis import strategies as st
 
 from vetter.physics import kepler
 from vetter.physics.roche import roche_lobe_fraction
-from vetter.physics.tides import ellipsoidal_amplitude_mag, gravity_darkening, synchronisation_time_myr
+from vetter.physics.tides import (
+    eccentric_share,
+    ellipsoidal_amplitude_mag,
+    gravity_darkening,
+    synchronisation_time_myr,
+)
 
 MAG = 2.5 / np.log(10.0)
 
@@ -104,3 +109,26 @@ def test_wider_orbits_lock_later(a: float, teff: float) -> None:
     near, far = synchronisation_time_myr(1.5, 1.0, 1.4, 5.0, teff, np.array([a, 2.0 * a]))
     power = 6.0 if teff < 7000.0 else 8.5
     assert far / near == pytest.approx(2.0**power)
+
+
+@pytest.mark.parametrize("eccentricity", [0.0, 0.05, 0.3, 0.7])
+@pytest.mark.parametrize("sine", [1.0, 0.6])
+def test_the_share_in_an_eccentric_orbit_is_that_of_its_light_curve(eccentricity: float, sine: float) -> None:
+    """The equilibrium tide sampled in time by Kepler's equation, its second harmonic averaged over omega."""
+    mean = 2.0 * np.pi * np.arange(4096) / 4096
+    anomaly = kepler.eccentric_anomaly(mean, eccentricity)
+    nu, radius = kepler.true_anomaly(anomaly, eccentricity), 1.0 - eccentricity * np.cos(anomaly)
+    squares = []
+    for omega in 2.0 * np.pi * np.arange(16) / 16:
+        light = radius**-3.0 * (1.5 * sine**2 - 1.0 + 1.5 * sine**2 * np.cos(2.0 * (nu + omega)))
+        squares.append((2.0 * np.abs(np.mean(light * np.exp(-2j * mean)))) ** 2)
+    expected = np.sqrt(np.mean(squares)) / (1.5 * sine**2)
+    assert eccentric_share(eccentricity, sine) == pytest.approx(expected, rel=1e-6)
+
+
+def test_the_share_begins_as_the_series_does() -> None:
+    """1 - 5/2 e^2 and 9/4 e^2 (Hansen coefficients of any textbook, for example Murray & Dermott 1999)."""
+    assert eccentric_share(0.0, 0.8) == pytest.approx(1.0, abs=1e-12)
+    e = 0.02
+    steady = 2.0 * 2.25 * e * e / 3.0
+    assert eccentric_share(e, 1.0) == pytest.approx(np.hypot(1.0 - 2.5 * e * e, steady), abs=1e-6)

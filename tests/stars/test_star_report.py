@@ -6,7 +6,9 @@ import json
 import math
 
 import pytest
+from click.testing import CliRunner
 
+from vetter.cli import main
 from vetter.errors import InputError
 from vetter.stars.main_sequence import main_sequence
 from vetter.stars.report import KINDS, render_star, star_report
@@ -67,6 +69,13 @@ def test_helium_star_lives_on_helium() -> None:
     assert star_report("helium", 1.0)["lifetime_myr"] == pytest.approx(21.0759)
     with pytest.raises(InputError, match=r"0\.3 to 15 solar masses"):
         star_report("helium", 0.1)
+
+
+@pytest.mark.parametrize("kind", KINDS)
+def test_the_command_knows_every_kind(kind: str) -> None:
+    result = CliRunner().invoke(main, ["star", kind, "--mass", "0.6", "--teff", "20000", "--json"])
+    assert json.loads(result.stdout) == star_report(kind, 0.6, white_dwarf_teff_k=20000.0)
+    assert kind in CliRunner().invoke(main, ["star", "--help"]).stdout
 
 
 def test_screen_shows_every_quantity_with_its_unit() -> None:
