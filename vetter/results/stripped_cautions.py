@@ -78,13 +78,14 @@ def gravity_caution(run: ScenarioRun, cases: Sequence[BestCase]) -> list[str]:
     """Return the error of log g that would exclude a stripped seen star, found by fitting it again.
 
     The value supposed is that of the best other explanation; everything else stays as it was measured. A tighter log g
-    alone may not do: a companion that shines makes the spectrum, and so log g, less sure.
+    alone may not do: a companion that shines makes the spectrum, and so log g, less sure. Nothing is said where log g
+    is known better than any error tried.
     """
     other = min(
         (c for c in cases if c.prediction.ordinary_seen_star), key=lambda c: c.row.chi2_min or 0.0, default=None
     )
     spectrum = None if other is None else _spectrum(other.branch)
-    if other is None or spectrum is None or spectrum.logg is None:
+    if other is None or spectrum is None or spectrum.logg is None or spectrum.logg.error <= LOGG_ERRORS[-1]:
         return []
     value = float(other.prediction.logg[0])
 
