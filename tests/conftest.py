@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass, replace
+from functools import cache
 from pathlib import Path
 from typing import Any
 
@@ -89,3 +90,9 @@ def with_orbit() -> Callable[..., System]:
         return replace(PLAIN, orbit=replace(PLAIN.orbit, **fields))
 
     return make
+
+
+@pytest.fixture(scope="session")
+def full() -> Callable[[str], Verdicts]:
+    """Return the whole evaluation of an example by its file's stem, made once: it takes half a minute."""
+    return cache(lambda name: evaluate(read_system(EXAMPLES / f"{name}.toml")))

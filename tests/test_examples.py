@@ -2,17 +2,18 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from pathlib import Path
 
 import pytest
 
-from vetter import evaluate, read_system
+from vetter import Verdicts
 
 EXAMPLES = Path(__file__).parent.parent / "examples"
 
 
-def test_dark_companion_is_a_black_hole() -> None:
-    verdicts = evaluate(read_system(EXAMPLES / "dark_companion.toml"))
+def test_dark_companion_is_a_black_hole(full: Callable[[str], Verdicts]) -> None:
+    verdicts = full("dark_companion")
     assert not verdicts.nothing_fits
     allowed = {s.name for s in verdicts.scenarios if s.verdict == "allowed"}
     excluded = {s.name for s in verdicts.scenarios if s.verdict == "excluded"}
@@ -23,8 +24,8 @@ def test_dark_companion_is_a_black_hole() -> None:
     assert "1.38 Msun at any inclination" in verdicts.scenario("white_dwarf").closed_because
 
 
-def test_hidden_star_is_an_ordinary_star() -> None:
-    verdicts = evaluate(read_system(EXAMPLES / "hidden_star.toml"))
+def test_hidden_star_is_an_ordinary_star(full: Callable[[str], Verdicts]) -> None:
+    verdicts = full("hidden_star")
     assert not verdicts.nothing_fits
     found = {s.name: s.verdict for s in verdicts.scenarios}
     assert found["main_sequence"] == found["inner_pair"] == "allowed"

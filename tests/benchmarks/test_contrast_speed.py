@@ -1,4 +1,4 @@
-"""How long a contrast takes; run with ``-s`` to see the number."""
+"""How long a contrast takes; ``OPENBLAS_NUM_THREADS=1 python -m pytest -m slow -s`` on a quiet core."""
 
 from __future__ import annotations
 
@@ -12,6 +12,7 @@ from vetter import contrast, read_system
 EXAMPLE = Path(__file__).parent.parent.parent / "examples" / "hidden_pair.toml"
 
 
+@pytest.mark.slow
 @pytest.mark.benchmark
 def test_contrast_of_forty_epochs_and_ten_bands() -> None:
     system = read_system(EXAMPLE)
@@ -23,5 +24,4 @@ def test_contrast_of_forty_epochs_and_ten_bands() -> None:
     contrast(system)
     seconds = time.process_time() - start
     print(f"\ncontrast of 40 epochs and 10 bands, all pairs: {seconds:.1f} s")
-    # The goal is 5 s on a quiet core; the machine that runs the tests is seldom quiet.
-    assert seconds < 10.0
+    assert seconds < 5.0
