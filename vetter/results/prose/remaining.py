@@ -38,6 +38,11 @@ def ordinary(material: Material) -> tuple[Sentence, ...]:
 def left_among(rows: Sequence[ScenarioVerdict], left: Sequence[ScenarioVerdict]) -> Sentence:
     """Return which ordinary explanations are not excluded, those that are disfavoured marked as such."""
     names = [with_article(row) if row.verdict == "allowed" else f"{with_article(row)} ({row.verdict})" for row in left]
+    if 1 < len(left) == len(rows):
+        every = count_of("remaining.ordinary", len(rows))
+        return say(
+            "None of the {count} ordinary explanations tried is excluded: {names}.", count=every, names=joined(names)
+        )
     verb = "is" if len(left) == 1 else "are"
     return say(
         f"Of the {{count}} ordinary explanations tried, {{left}} {verb} not excluded: {{names}}.",

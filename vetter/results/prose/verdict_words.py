@@ -12,6 +12,9 @@ from vetter.results.verdicts import EXCLUDED_SIGMA, Driver, ScenarioVerdict, ver
 AS_GOOD_AS_THE_BEST = 1.0
 """Below this many sigma a fit is called as good as the best."""
 
+EXACT_CHI2 = 0.005
+"""Below this a sum of squares says only that the data leave more freedom than they take."""
+
 LOW_CHANCE, HIGH_CHANCE = 0.001, 0.99
 """Probabilities beyond these are given as bounds."""
 
@@ -72,6 +75,8 @@ def best_fit(row: ScenarioVerdict) -> Sentence:
     """Return the goodness of the best fit of all."""
     if row.chi2_min is None or row.fit_p_value is None:
         return say("It fits best of all and is allowed.")
+    if row.chi2_min < EXACT_CHI2:
+        return say("With so few data it matches every one of them exactly, and is allowed.")
     key = f"scenarios.{row.name}"
     if row.fit_p_value < LOW_CHANCE:
         chance = say("less than {p}", p=given("method.p_value_low", LOW_CHANCE))
