@@ -64,6 +64,13 @@ def grid_option(command: F) -> F:
     return click.option("--grid", metavar="NAME", help=help_text)(command)
 
 
+def run_options(command: F) -> F:
+    """Add --seed, --quiet and --grid, which every long run takes."""
+    seed = click.option("--seed", default=0, show_default=True, help="Same seed and input, same output.")
+    quiet = click.option("--quiet", is_flag=True, help="Print no progress.")
+    return seed(quiet(grid_option(command)))
+
+
 def emit(result: object, text: str, as_json: bool) -> None:
     """Print a result on stdout, as JSON or as text."""
     click.echo(json.dumps(result, indent=1, allow_nan=False) if as_json else text.rstrip("\n"))
@@ -89,9 +96,7 @@ def inspect(system_file: Path, as_json: bool, seed: int) -> None:
 @click.option("--out", "directory", type=click.Path(path_type=Path), help="Also write tables and a figure there.")
 @click.option("--scenario", "scenarios", multiple=True, help="Only this scenario (repeatable).")
 @click.option("--third-light", is_flag=True, help="Also try an unrelated star in the aperture: unrelated_light.")
-@click.option("--seed", default=0, show_default=True, help="Same seed and input, same output.")
-@click.option("--quiet", is_flag=True, help="Print no progress.")
-@grid_option
+@run_options
 def evaluate(
     system_file: Path,
     as_json: bool,
@@ -124,9 +129,7 @@ def evaluate(
 @click.option("--between", nargs=2, metavar="A B", help="Two explanations, one of them at least a pair.")
 @click.option("--out", "directory", type=click.Path(path_type=Path), help="Also write the JSON and a figure there.")
 @click.option("--n-body", is_flag=True, help="Integrate the most favourable pairs (needs the package rebound).")
-@click.option("--seed", default=0, show_default=True, help="Same seed and input, same output.")
-@click.option("--quiet", is_flag=True, help="Print no progress.")
-@grid_option
+@run_options
 def contrast(
     system_file: Path,
     as_json: bool,
@@ -215,9 +218,7 @@ def write_files(directory: Path, files: Mapping[str, str | bytes]) -> None:
 @click.option("--title", help="Heading of the section.")
 @click.option("--journal-table", is_flag=True, help="A deluxetable of the AAS journals instead of booktabs.")
 @click.option("--spelling", type=click.Choice(["british", "american"]), default="british", show_default=True)
-@click.option("--seed", default=0, show_default=True, help="Same seed and input, same output.")
-@click.option("--quiet", is_flag=True, help="Print no progress.")
-@grid_option
+@run_options
 def write(
     system_file: Path,
     directory: Path,

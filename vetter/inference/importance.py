@@ -138,10 +138,11 @@ def _effort(
     """One run from the prior to the last round; see :func:`sample`."""
     if start is None:
         start = prior_points(problem.dimension, settings.start_points, rng)
-    first = _evaluate(problem, start)
+    found = problem.evaluate(np.clip(start, -LARGEST_COORDINATE, LARGEST_COORDINATE))
+    first = _ln_target(problem, start, found)
     if not np.isfinite(first).any():
         return None
-    likeliest = _likeliest(problem, start[np.isfinite(first)])
+    likeliest = start[_likeliest(found, np.isfinite(first))]
     mixture, modes = _first_proposal(problem, start, first, settings, rng)
     mixture, evaluations = _adapt(problem, mixture, settings, rng)
     x, ln_weights, more = _last_round(problem, mixture, settings, rng)
@@ -174,18 +175,22 @@ def prior_points(dimension: int, count: int, rng: np.random.Generator) -> FloatA
 
 def _evaluate(problem: Problem, x: FloatArray) -> FloatArray:
     """Return ln likelihood plus ln prior ratio (n,); -inf outside the box or behind a wall."""
-    evaluation: Evaluation = problem.evaluate(np.clip(x, -LARGEST_COORDINATE, LARGEST_COORDINATE))
+    return _ln_target(problem, x, problem.evaluate(np.clip(x, -LARGEST_COORDINATE, LARGEST_COORDINATE)))
+
+
+def _ln_target(problem: Problem, x: FloatArray, found: Evaluation) -> FloatArray:
+    """Return the same from what the problem says at ``x``."""
     inside = np.all(np.abs(x) <= LARGEST_COORDINATE, axis=1)
-    value = ln_likelihood(problem, evaluation.residuals) + evaluation.ln_prior_ratio
+    value = ln_likelihood(problem, found.residuals) + found.ln_prior_ratio
     return np.where(inside & ~np.isnan(value), value, -np.inf)
 
 
-def _likeliest(problem: Problem, x: FloatArray) -> FloatArray:
-    """Return the ``LIKELIEST`` points with the least sum of squares, nuisances included."""
-    found = problem.evaluate(x)
+def _likeliest(found: Evaluation, allowed: NDArray[np.bool_]) -> NDArray[np.intp]:
+    """Return the indices of the ``LIKELIEST`` allowed points with the least sum of squares, nuisances included."""
     chi2 = np.einsum("ij,ij->i", found.residuals, found.residuals)
     chi2 += np.einsum("ij,ij->i", found.nuisances, found.nuisances)
-    return x[np.argsort(chi2, kind="stable")[:LIKELIEST]]
+    rows = np.flatnonzero(allowed)
+    return rows[np.argsort(chi2[rows], kind="stable")[:LIKELIEST]]
 
 
 def _ln_normal(x: FloatArray) -> FloatArray:

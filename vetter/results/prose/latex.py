@@ -115,7 +115,7 @@ def render_sentence(sentence: Sentence, spelling: str) -> str:
 def _inline(part: Inline, spelling: str) -> str:
     match part:
         case Text(words):
-            return escape(spelled(words, spelling)).replace("--", "--")
+            return escape(spelled(words, spelling))
         case Name(words):
             return escape(words)
         case Symbol(key):
