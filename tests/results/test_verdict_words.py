@@ -10,7 +10,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from vetter.results.table import strongest
-from vetter.results.verdicts import ScenarioVerdict, Verdicts, headline, verdict_word, weakest_exclusion
+from vetter.results.verdicts import ScenarioVerdict, Verdicts, headline, sigma_text, verdict_word, weakest_exclusion
 
 Row = Callable[..., ScenarioVerdict]
 Table = Callable[..., Verdicts]
@@ -99,8 +99,16 @@ def test_all_excluded_but_one_observation_carries_it(row: Row, table: Table) -> 
     )
     assert headline(table(*rows)) == (
         "Every ordinary explanation tried is excluded, but one observation carries it: without light limit the "
-        "weakest exclusion is 5.0 sigma."
+        "weakest exclusion is 4.96 sigma."
     )
+
+
+@pytest.mark.parametrize(
+    ("sigma", "shown"), [(4.96, "4.96"), (4.9999, "4.99"), (2.98, "2.98"), (5.04, "5.0"), (3.0, "3.0"), (24.46, "24.5")]
+)
+def test_rounding_never_crosses_the_border_of_a_verdict(sigma: float, shown: str) -> None:
+    assert sigma_text(sigma) == shown
+    assert verdict_word(float(shown)) == verdict_word(sigma)
 
 
 def test_walls_alone_exclude(row: Row, table: Table) -> None:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import textwrap
 
-from vetter.results.verdicts import Driver, ScenarioVerdict, Verdicts, headline
+from vetter.results.verdicts import Driver, ScenarioVerdict, Verdicts, headline, sigma_text
 
 WIDE = 120
 NARROW = 80
@@ -87,7 +87,7 @@ def _narrow_rows(verdicts: Verdicts, width: int) -> list[str]:
 
 
 def _sigma(scenario: ScenarioVerdict) -> str:
-    return "-" if scenario.sigma is None else f"{scenario.sigma:.1f}"
+    return "-" if scenario.sigma is None else sigma_text(scenario.sigma)
 
 
 def _mass(scenario: ScenarioVerdict) -> str:
@@ -113,7 +113,7 @@ def _reason(scenario: ScenarioVerdict) -> str:
         return "these data cannot tell it from one dark body"
     if scenario.verdict == "allowed" or not scenario.driven_by:
         return ""
-    return ", ".join(f"{driver.label} ({driver.sigma_without:.1f})" for driver in strongest(scenario))
+    return ", ".join(f"{driver.label} ({sigma_text(driver.sigma_without)})" for driver in strongest(scenario))
 
 
 def strongest(scenario: ScenarioVerdict) -> list[Driver]:

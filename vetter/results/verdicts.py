@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 from typing import Any
@@ -214,6 +215,15 @@ def verdict_word(sigma: float | None) -> str:
     return "disfavoured" if sigma >= DISFAVOURED_SIGMA else "allowed"
 
 
+def sigma_text(sigma: float, decimals: int = 1) -> str:
+    """Return a sigma rounded to ``decimals``; to one more, if need be downwards, where it would cross a border."""
+    for shown in (f"{sigma:.{decimals}f}", f"{sigma:.{decimals + 1}f}"):
+        if verdict_word(float(shown)) == verdict_word(sigma):
+            return shown
+    scale = 10.0 ** (decimals + 1)
+    return f"{math.floor(sigma * scale) / scale:.{decimals + 1}f}"
+
+
 def headline(verdicts: Verdicts) -> str:
     """Return the one sentence that sums the table up, never more than the table says."""
     if verdicts.nothing_fits:
@@ -231,8 +241,9 @@ def headline(verdicts: Verdicts) -> str:
         return f"{sentence}, whatever single observation is left out."
     sigma, label = weakest
     if sigma >= EXCLUDED_SIGMA:
-        return f"{sentence}; without any single observation the weakest exclusion is {sigma:.1f} sigma."
-    return f"{sentence}, but one observation carries it: without {label} the weakest exclusion is {sigma:.1f} sigma."
+        return f"{sentence}; without any single observation the weakest exclusion is {sigma_text(sigma)} sigma."
+    left = f"the weakest exclusion is {sigma_text(sigma)} sigma."
+    return f"{sentence}, but one observation carries it: without {label} {left}"
 
 
 def weakest_exclusion(scenarios: list[ScenarioVerdict]) -> tuple[float, str] | None:

@@ -12,7 +12,7 @@ from vetter.observations.photometry import PhotometryObservation
 from vetter.results.figures import style
 from vetter.results.figures.best_light import narrow_engine, spectra
 from vetter.results.figures.placing import Placer
-from vetter.results.verdicts import ScenarioVerdict
+from vetter.results.verdicts import ScenarioVerdict, sigma_text
 from vetter.scenarios.context import Context
 
 if TYPE_CHECKING:
@@ -169,7 +169,7 @@ def _strip(
     axes.set_ylim(-STRIP_SIGMA, STRIP_SIGMA * 2.0)
     axes.set_yticks([-3, 0, 3], ["−3", "0", "3"])
     axes.tick_params(axis="y", labelsize=5.5)
-    said = row.title if row.sigma is None else f"{row.title} ({row.sigma:.1f}σ)"
+    said = row.title if row.sigma is None else f"{row.title} ({sigma_text(row.sigma)}σ)"
     axes.text(0.015, 0.96, said, transform=axes.transAxes, va="top", fontsize=style.SMALL)
 
 

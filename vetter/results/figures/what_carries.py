@@ -7,7 +7,7 @@ from collections.abc import Mapping, Sequence
 from typing import TYPE_CHECKING
 
 from vetter.results.figures import style
-from vetter.results.verdicts import ScenarioVerdict, verdict_word
+from vetter.results.verdicts import ScenarioVerdict, sigma_text, verdict_word
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -49,7 +49,7 @@ def _cell(axes: Axes, x: float, y: int, sigma: float | None, closed: bool) -> No
         return
     ground, ink = SHADES[verdict_word(sigma)]
     axes.add_patch(Rectangle((x, y), 1.0, 1.0, facecolor=ground, edgecolor=style.GREY, linewidth=0.4))
-    text = "–" if sigma is None else f"{sigma:.1f}" if sigma < 99.95 else f"{sigma:.0f}"
+    text = "–" if sigma is None else sigma_text(sigma, 1 if sigma < 99.95 else 0)
     axes.text(x + 0.5, y + 0.5, text, ha="center", va="center", fontsize=6, color=ink)
 
 

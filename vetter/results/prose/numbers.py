@@ -3,10 +3,9 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Callable
 
 from vetter.results.prose.document import Number
-from vetter.results.verdicts import DISFAVOURED_SIGMA, EXCLUDED_SIGMA, verdict_word
+from vetter.results.verdicts import sigma_text
 
 WORDS = ("no", "one", "two", "three", "four", "five", "six", "seven", "eight", "nine", "ten", "eleven", "twelve")
 
@@ -80,20 +79,7 @@ def given_percent(key: str, share: float) -> Number:
 
 def sigma(key: str, value: float) -> Number:
     """Return a number of sigma to one decimal; two where one would cross the border between two verdicts."""
-    decimals = 1 if value < 100.0 else 0
-    shown = fixed(value, decimals)
-    while verdict_word(float(shown)) != verdict_word(value):
-        decimals += 1
-        shown = _towards(value, decimals)
-    return Number(key, value, shown, unit="sigma")
-
-
-def _towards(value: float, decimals: int) -> str:
-    """Round, but stay on this side of the borders at 3 and 5."""
-    scale = 10.0**decimals
-    crossed = value < DISFAVOURED_SIGMA <= round(value, decimals) or value < EXCLUDED_SIGMA <= round(value, decimals)
-    rounding: Callable[[float], float] = math.floor if crossed else round
-    return f"{rounding(value * scale) / scale:.{decimals}f}"
+    return Number(key, value, sigma_text(value, 1 if value < 100.0 else 0), unit="sigma")
 
 
 def counted(number: int) -> str | None:
