@@ -81,6 +81,23 @@ def test_names_inside_a_figure_do_not_cover_each_other(
                 assert box.x1 <= frame.x1 + 1.0, (label, word)
 
 
+@pytest.mark.parametrize("example", ["dark", "hidden"])
+def test_no_word_is_cut_at_the_resolution_of_the_file(
+    example: str, drawings: dict[str, list[tuple[str, Figure]]]
+) -> None:
+    for label, figure in drawings[example]:
+        figure.set_dpi(300)
+        figure.draw_without_rendering()
+        for axes in figure.axes:
+            texts = (*axes.get_xticklabels(), *axes.get_yticklabels(), *axes.texts, axes.xaxis.label, axes.yaxis.label)
+            # Numbers of an axis also stand, undrawn, beyond its ends: only words are looked at.
+            words = (t for t in texts if any(c.isalpha() for c in t.get_text()) and "mathdefault" not in t.get_text())
+            for text in words:
+                box = text.get_window_extent()
+                inside = box.x0 >= -0.5 and box.y0 >= -0.5 and box.x1 <= figure.bbox.x1 + 0.5
+                assert inside, (label, text.get_text())
+
+
 def test_the_case_drawn_star_by_star_is_the_best_ordinary_one_with_light(hidden: SimpleNamespace) -> None:
     chosen = chosen_case(hidden.verdicts.scenarios)
     assert chosen is not None

@@ -52,6 +52,8 @@ RULES: Any = {
     "hatch.linewidth": 0.4,
     "mathtext.fontset": "dejavusans",
     "pdf.fonttype": 42,
+    # One resolution for laying out and saving: at another one letters are hinted otherwise, and names would be cut.
+    "figure.dpi": 300,
     "savefig.dpi": 300,
 }
 
