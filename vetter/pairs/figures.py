@@ -56,6 +56,8 @@ def draw_plane(axis: Axes, found: Contrast, detail: PairDetail) -> None:
     axis.set_xlim(plane.period_edge_d[0], plane.period_edge_d[-1])
     axis.set_ylim(0.0, 1.0)
     _name_regions(axis, plane)
+    low = float(plane.stable_d[0])
+    axis.text(low, 0.03, "stability limit ", rotation=90, ha="right", va="bottom", fontsize=SMALL, clip_on=True)
     axis.set_xlabel("inner period (d)")
     axis.set_ylabel("mass ratio (lighter / heavier)")
     axis.set_title(found.explanation(detail.name).title, loc="left", fontsize=7.5)
