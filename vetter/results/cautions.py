@@ -18,6 +18,7 @@ from vetter.results.fit_cautions import (
     parallax_cautions,
     significance_cautions,
 )
+from vetter.results.parameter_words import parameter_words
 from vetter.results.stripped_cautions import stripped_cautions
 from vetter.results.verdicts import ScenarioVerdict
 from vetter.scenarios.context import ASTROMETRY_BAND, Context, ebv_max_mag
@@ -101,7 +102,7 @@ def about_fits(rows: Sequence[ScenarioVerdict]) -> list[str]:
         if row.best_fit is None or row.verdict == "excluded":
             continue
         if row.best_fit.at_edge:
-            names = ", ".join(name.replace("_", " ") for name in row.best_fit.at_edge)
+            names = ", ".join(map(parameter_words, row.best_fit.at_edge))
             edges.append(f"{row.title.lower()} ({names})")
         ratio = row.best_fit.values["optical_light_ratio"]
         if ratio > DILUTION_FROM:

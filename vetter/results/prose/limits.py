@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from vetter.results.cautions import about_fits, about_sampling
+from vetter.results.parameter_words import parameter_words
 from vetter.results.prose.document import Sentence, joined, say
 from vetter.results.prose.favourable import share_words
 from vetter.results.prose.material import Material, in_a_sentence, with_article
@@ -15,27 +16,6 @@ COMMON = "A table of likelihoods is not a discovery"
 
 KEPT = "The seen star was taken as"
 """How a caution on the fits begins that is quoted as it is."""
-
-PARAMETER_WORDS = {
-    "companion_life_fraction": "the age of the companion",
-    "companion_rise": "the evolutionary state of the companion",
-    "companion_warmth": "the temperature of the companion",
-    "companion_inflation": "the envelope left on the companion",
-    "companion_teff_k": "the temperature of the companion",
-    "companion_mass_msun": "the mass of the companion",
-    "inner_mass_ratio": "the mass ratio of the pair",
-    "inner_period_share": "the period of the pair",
-    "white_dwarf_mass_msun": "the mass of the white dwarf",
-    "white_dwarf_teff_k": "the temperature of the white dwarf",
-    "second_white_dwarf_teff_k": "the temperature of the second white dwarf",
-    "heavier_share": "the mass ratio of the pair",
-    "ebv_mag": "the reddening",
-    "distance_pc": "the distance",
-    "mass_msun": "the mass of the seen star",
-    "unrelated_teff_k": "the temperature of the unrelated star",
-    "unrelated_radius_rsun": "the radius of the unrelated star",
-}
-"""Parameters in words."""
 
 
 def limits(material: Material) -> tuple[Sentence, ...]:
@@ -67,7 +47,7 @@ def edges(rows: tuple[ScenarioVerdict, ...]) -> tuple[Sentence, ...]:
     at_edge: dict[str, list[str]] = {}
     for row in _standing(rows):
         for name in row.best_fit.at_edge if row.best_fit is not None else ():
-            at_edge.setdefault(PARAMETER_WORDS.get(name, name.replace("_", " ")), []).append(in_a_sentence(row))
+            at_edge.setdefault(parameter_words(name), []).append(in_a_sentence(row))
     if not at_edge:
         return ()
     parts = joined([f"{what} ({', '.join(titles)})" for what, titles in at_edge.items()], between="; ", last="; and ")
